@@ -1,0 +1,83 @@
+"""The program's entry: finds the command, turns errors into one line and an exit code."""
+
+from __future__ import annotations
+
+import os
+import sys
+from importlib import import_module
+from typing import Any
+
+import click
+
+from cuebook import __version__
+from cuebook.cli.exit_codes import ExitCode
+from cuebook.cli.output import print_error
+from cuebook.errors import CuebookError, UsageError
+
+_COMMANDS: dict[str, tuple[str, str]] = {
+    # name: (module below cuebook.cli that holds `command`, one line for --help)
+    "measure": ("measure", "Metrics of a recording; nothing is stored."),
+}
+
+
+class LazyGroup(click.Group):
+    """A group that imports a command only when it is called, to keep start-up light."""
+
+    def list_commands(self, ctx: click.Context) -> list[str]:
+        """Return the names of all commands."""
+        del ctx
+        return list(_COMMANDS)
+
+    def get_command(self, ctx: click.Context, cmd_name: str) -> click.Command | None:
+        """Import and return one command, or None if there is none of that name."""
+        del ctx
+        if cmd_name not in _COMMANDS:
+            return None
+        command = import_module(f"cuebook.cli.{_COMMANDS[cmd_name][0]}").command
+        if not isinstance(command, click.Command):  # pragma: no cover - a programming error
+            raise TypeError(cmd_name)
+        return command
+
+    def format_commands(self, ctx: click.Context, formatter: click.HelpFormatter) -> None:
+        """List the commands from the table above, importing none of them."""
+        del ctx
+        with formatter.section("Commands"):
+            formatter.write_dl([(name, line) for name, (_, line) in _COMMANDS.items()])
+
+
+@click.group(cls=LazyGroup, invoke_without_command=True)
+@click.version_option(__version__, prog_name="cuebook")
+@click.pass_context
+def cuebook(ctx: click.Context) -> None:
+    """Find, log and review the words that steer movement.
+
+    Without a command the screens open. Every command takes --json and --library.
+    """
+    if ctx.invoked_subcommand is None:
+        click.echo(ctx.get_help())
+
+
+def run(arguments: list[str]) -> int:
+    """Run one command line and return its exit code; errors are printed, never raised."""
+    as_json = "--json" in arguments
+    try:
+        result: Any = cuebook.main(args=arguments, prog_name="cuebook", standalone_mode=False)
+    except CuebookError as error:
+        return print_error(error, as_json=as_json)
+    except click.exceptions.Exit as exit_request:
+        return exit_request.exit_code
+    except click.ClickException as error:
+        return print_error(UsageError(error.format_message(), "See --help."), as_json=as_json)
+    except (click.Abort, KeyboardInterrupt):
+        return int(ExitCode.INTERRUPTED)
+    except BrokenPipeError:
+        # The reader closed the pipe (`| head`): no error. Point stdout away so that the
+        # interpreter's last flush does not complain.
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        return int(ExitCode.DONE)
+    return result if isinstance(result, int) else int(ExitCode.DONE)
+
+
+def main() -> None:
+    """Run the program with the arguments of the process."""
+    sys.exit(run(sys.argv[1:]))

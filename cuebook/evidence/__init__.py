@@ -1,0 +1,1 @@
+"""How cues are ranked: model, posterior, verdicts. Pure."""

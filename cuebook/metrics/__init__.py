@@ -1,0 +1,1 @@
+"""Movement metrics, one module a family, one registry. Pure."""

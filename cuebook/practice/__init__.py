@@ -1,0 +1,1 @@
+"""What happened in practice: sessions, blocks, uses, and the changes derived from them. Pure."""

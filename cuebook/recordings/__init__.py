@@ -1,0 +1,1 @@
+"""From a file to a Recording: readers, time, cleaning. Pure."""

@@ -1,0 +1,1 @@
+"""Tables, engine, migrations, reading path and originals: the only package that knows SQL."""

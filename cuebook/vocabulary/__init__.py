@@ -1,0 +1,1 @@
+"""Controlled lists: features, regions, tasks, tempo, ages, backgrounds, lay words."""
