@@ -1,0 +1,1 @@
+"""The invented demonstration: three settings, planted truths, simulated recordings."""
