@@ -7,9 +7,9 @@ from collections import Counter
 from itertools import pairwise
 from pathlib import Path
 from statistics import mean
+from typing import TYPE_CHECKING
 
 import pytest
-from support.demonstration import Demo
 
 from cuebook.jobs.demo.plan import DemoBlock, DemoParticipation
 from cuebook.jobs.demo.quillgate import build_quillgate
@@ -17,6 +17,9 @@ from cuebook.jobs.demo.reach import ReachState
 from cuebook.jobs.demo.simulate import DEMO_SEED, write_recordings
 from cuebook.jobs.demo.truth import read_truth
 from cuebook.vocabulary import load_vocabulary
+
+if TYPE_CHECKING:
+    from support.demonstration import Demo
 
 TRAP = "shoulder-stays-home"
 TRUTH = read_truth()
