@@ -130,7 +130,11 @@ def _weigh(
             elif lead.list_name == "feature":
                 taken_back.setdefault(lead.slug, set()).update(places)
     # "No tension": the fault is denied, so its name must not count as a wish either.
-    kept = [item for item in evidence if not item.places & taken_back.get(item.lead.slug, set())]
+    kept = [
+        item
+        for item in evidence
+        if item.lead.sense is Sense.FAULT or not item.places & taken_back.get(item.lead.slug, set())
+    ]
     return kept, list(taken_back)
 
 
