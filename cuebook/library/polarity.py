@@ -30,9 +30,10 @@ class Polarity:
     def is_denied(self, places: Sequence[int]) -> bool:
         """Return whether the words there are said not to be so, or no longer so."""
         first, last = min(places), max(places)
-        return (
-            self._is_over(first, last) or self._is_negated(first, places) or self._is_stopped(first)
-        )
+        # "Does not swing any more": the "any more" belongs to the trouble's own "not".
+        holds_not = any(self._tokens[i].stem in self._words.negators for i in places)
+        is_over = not holds_not and self._is_over(first, last)
+        return is_over or self._is_negated(first, places) or self._is_stopped(first)
 
     def is_wanting(self, places: Sequence[int]) -> bool:
         """Return whether a wanted quality there is said to be missing or asked for."""
