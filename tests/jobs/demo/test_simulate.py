@@ -317,3 +317,16 @@ def test_nothing_names_a_person_or_a_device(demo: Demo) -> None:
     assert {one.entered_by for one in demo.plan.sessions} <= staff
     assert {learner for one in demo.plan.sessions for learner in one.learners} <= codes
     assert {member for group in demo.plan.groups for member in group.members} == codes
+
+
+def test_only_those_who_agreed_were_recorded(demo: Demo) -> None:
+    """A movement was recorded of nobody who had not said yes to it."""
+    agreed = {one.code for one in demo.plan.learners if one.consents["record_motion"] == "yes"}
+    recorded = {
+        part.learner
+        for _, block in demo.plan.iterate_blocks()
+        for part in block.participations
+        if any(trial.file for trial in part.trials)
+    }
+    assert recorded
+    assert recorded <= agreed
