@@ -263,3 +263,25 @@ def _invert_from_root(root: FloatArray) -> FloatArray:
     inverse, _ = dpotri(root, lower=1)
     lower = np.tril(inverse)
     return np.asarray(lower + np.tril(inverse, -1).T)
+
+
+def compute_joint(layout: CrossedLayout, solution: Solution) -> tuple[FloatArray, FloatArray]:
+    """Return mean and covariance of (fixed columns, cues), whichever factor was eliminated.
+
+    Returns
+    -------
+    shape (p + n_cues,) and (p + n_cues, p + n_cues). The covariance is that of the error of
+    prediction: it holds the uncertainty of the fixed effects. Memory grows with n_cues squared.
+    """
+    full = solution.compute_covariance()
+    fixed = np.arange(layout.n_fixed)
+    mean = solution.coefficient
+    if layout.kept_name == "cue":
+        at = np.concatenate([fixed, np.arange(layout.n_dense, len(full))])
+        return mean[at], full[np.ix_(at, at)]
+    gain, al = solution.learner_gain, solution.blocks.al
+    spread = np.asarray(full @ al) * gain
+    own = np.diag(gain) + gain[:, None] * np.asarray(al.T @ spread)
+    crossed = -spread[fixed]
+    covariance = np.block([[full[np.ix_(fixed, fixed)], crossed], [crossed.T, own]])
+    return np.concatenate([mean[fixed], solution.eliminated]), covariance

@@ -11,7 +11,7 @@ import numpy.typing as npt
 from cuebook.errors import InputError
 from cuebook.evidence.arrays import FloatArray
 from cuebook.evidence.crossed_layout import VARIANCE_NAMES, CrossedLayout, build_layout
-from cuebook.evidence.eliminated import Solution, sum_columns
+from cuebook.evidence.eliminated import Solution, compute_joint, sum_columns
 from cuebook.evidence.newton import minimise_criterion
 
 
@@ -58,13 +58,7 @@ class RemlFit:
         The error of the prediction includes the uncertainty of the fixed effects. Memory grows with
         the square of the number of cues.
         """
-        full = self.solution.compute_covariance()
-        fixed = np.arange(self.layout.n_fixed)
-        if self.layout.kept_name == "cue":
-            at = np.concatenate([fixed, np.arange(self.layout.n_dense, len(full))])
-            return np.asarray(full[np.ix_(at, at)])
-        crossed, own = self._spread_to_eliminated(full)
-        return np.block([[full[np.ix_(fixed, fixed)], crossed[fixed]], [crossed[fixed].T, own]])
+        return compute_joint(self.layout, self.solution)[1]
 
     @property
     def beta_se(self) -> FloatArray:
@@ -110,12 +104,6 @@ class RemlFit:
             return np.diag(full)[self.layout.n_dense :].copy()
         gain, al = self.solution.learner_gain, self.solution.blocks.al
         return np.asarray(gain + gain**2 * sum_columns(al, np.asarray(full @ al)))
-
-    def _spread_to_eliminated(self, full: FloatArray) -> tuple[FloatArray, FloatArray]:
-        """Return the covariance of (dense, kept) with the eliminated, and of the eliminated."""
-        gain, al = self.solution.learner_gain, self.solution.blocks.al
-        spread = np.asarray(full @ al) * gain
-        return -spread, np.diag(gain) + gain[:, None] * np.asarray(al.T @ spread)
 
 
 def fit_reml(
