@@ -23,12 +23,12 @@ from cuebook.jobs.demo.reach import ReachState
 from cuebook.jobs.demo.strokes import StrokeState
 from cuebook.jobs.demo.sway import SwayState
 from cuebook.jobs.demo.truth import CueTruth, Truth
+from cuebook.library.seed_sets import load_seed_cues
 
 if TYPE_CHECKING:
     import numpy as np
 
 MovementState = ReachState | SwayState | StrokeState
-IMAGE_AVOIDING = frozenset({"no_mental_imagery", "autistic_literal"})
 TICKS = ("clear", "some", "none", "not_seen")
 
 
@@ -132,9 +132,11 @@ def number_sessions(sessions: Sequence[DemoSession]) -> tuple[DemoSession, ...]:
     return tuple(replace(one, number=number) for number, one in enumerate(in_order, start=1))
 
 
-def may_use_images(learner: DemoLearner) -> bool:
-    """Return whether images reach this learner."""
-    return not IMAGE_AVOIDING & set(learner.access_needs)
+def suits(learner: DemoLearner, cue_code: str) -> bool:
+    """Return whether nothing in a learner's profile speaks against a cue."""
+    cue = next(cue for cue in load_seed_cues() if cue.code == cue_code)
+    is_reached = set(cue.access_avoid).isdisjoint(learner.access_needs)
+    return is_reached and learner.safety_note not in cue.note_avoid
 
 
 def note_practice(

@@ -2,35 +2,28 @@
 
 from __future__ import annotations
 
-import math
-from collections.abc import Sequence
-from dataclasses import dataclass, field, replace
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
 from datetime import timedelta
 from typing import TYPE_CHECKING, Any
 
 from cuebook.jobs.demo.course import Course
 from cuebook.jobs.demo.draft import SessionDraft, SettingPlan, note_practice, place_in_time
+from cuebook.jobs.demo.gait_visits import GaitVisits
 from cuebook.jobs.demo.people import DemoLearner, list_members
-from cuebook.jobs.demo.plan import (
-    DemoGroup,
-    DemoParticipation,
-    DemoSession,
-    DemoStaff,
-    DemoTrial,
-)
+from cuebook.jobs.demo.plan import DemoGroup, DemoParticipation, DemoSession, DemoStaff
 from cuebook.jobs.demo.standing import READING, StandingCorner
 from cuebook.jobs.demo.streams import open_stream
 from cuebook.jobs.demo.truth import Truth
+from cuebook.jobs.demo.walks import PROTOCOL, TASK, mark_near_fall, time_walks
 
 if TYPE_CHECKING:
     import numpy as np
 
 SETTING = "Larkspur Lane"
 GROUP = "larkspur-lane"
-TASK = "walking"
-TEACHER, ASSISTANT = "larkspur-teacher", "larkspur-assistant"
-PROTOCOL = {"distance_m": "10", "instrument": "stopwatch", "start": "moving, between tape marks"}
-CLASS_WEEKDAY = 2
+TEACHER, ASSISTANT, THERAPIST = "larkspur-teacher", "larkspur-assistant", "larkspur-therapist"
+CLASS_WEEKDAY, THERAPIST_WEEKDAY = 2, 4
 PRACTICE_MINUTES = 12
 ENTERED_AFTER = timedelta(minutes=15)
 LATE_WEEK, LATE_BY = 3, timedelta(days=2)
@@ -42,12 +35,13 @@ EVENT_SD = 0.3
 @dataclass(slots=True)
 class _WalkingClass:
     truth: Truth
-    facts: dict[str, Any]
     members: tuple[DemoLearner, ...]
-    courses: dict[str, Course]
+    courses: Mapping[str, Course]
     stream: np.random.Generator
-    left_out: dict[str, set[str]] = field(default_factory=dict)
-    """Cue to learners who nearly fell under it."""
+
+    @property
+    def facts(self) -> dict[str, Any]:
+        return dict(self.truth.settings["larkspur"])
 
     def meet(self, week: int) -> DemoSession:
         """Hold one weekly hour."""
@@ -63,16 +57,24 @@ class _WalkingClass:
         ]
         focus = self._pick_focus(week, here)
         draft.add("baseline", TASK, self._time(here, focus) + absent, 6, protocol=PROTOCOL)
-        for number, code in enumerate(self.facts["events"][week]["cues"], start=1):
+        for number, code in enumerate(self.facts["events"][week], start=1):
             parts = self._practise(here, code, self._find_near_falls(week, number))
-            self._add_event(draft, parts + absent, code, f"{GROUP}-w{week + 1}-e{number}")
-            stopped = {part.learner for part in parts if part.stop_reason}
-            here = [learner for learner in here if learner.code not in stopped]
+            draft.add(
+                "acquisition",
+                TASK,
+                parts + absent,
+                PRACTICE_MINUTES,
+                protocol=PROTOCOL,
+                cue=code or None,
+                chosen="planned",
+                event=f"{GROUP}-w{week + 1}-e{number}",
+            )
             walks = self._time(here, focus)
             draft.add("immediate_post", TASK, walks + absent, 6, protocol=PROTOCOL)
         return draft.close()
 
     def _see_who_came(self, week: int) -> list[DemoLearner]:
+        """Return who is there; whoever nearly falls this week is."""
         planned = {one["learner"] for one in self.facts["near_falls"] if one["week"] == week + 1}
         here = [
             learner
@@ -90,10 +92,9 @@ class _WalkingClass:
         in_turn = self.members[first:] + self.members[:first]
         return {learner.code for learner in [one for one in in_turn if one in here][:count]}
 
-    def _find_near_falls(self, week: int, number: int) -> dict[str, bool]:
-        """Return who nearly falls in this block, and whether that ends their part."""
+    def _find_near_falls(self, week: int, number: int) -> set[str]:
         return {
-            one["learner"]: one["stopped"]
+            one["learner"]
             for one in self.facts["near_falls"]
             if (one["week"], one["event"]) == (week + 1, number)
         }
@@ -102,86 +103,53 @@ class _WalkingClass:
         """Time the focus learners over the marks; the others walk along unmeasured."""
         return [
             DemoParticipation(
-                learner.code, trials=self._time_one(learner.code) if learner.code in focus else ()
+                learner.code,
+                trials=time_walks(self.truth, self.courses[learner.code])
+                if learner.code in focus
+                else (),
             )
             for learner in here
         ]
 
-    def _time_one(self, code: str) -> tuple[DemoTrial, ...]:
-        """Return the speeds a stopwatch gives: hundredths of a second over the marks."""
-        distance_m = self.facts["distance_m"]
-        states = self.courses[code].measure(self.facts["attempts_per_set"])
-        times_s = [round(distance_m / math.exp(state["log_speed"]), 2) for state in states]
-        return tuple(
-            DemoTrial(values={"gait_speed_m_s": round(distance_m / time_s, 3)})
-            for time_s in times_s
-        )
-
     def _practise(
-        self, here: Sequence[DemoLearner], code: str, near_falls: dict[str, bool]
+        self, here: Sequence[DemoLearner], code: str, near_falls: set[str]
     ) -> list[DemoParticipation]:
         """Say one cue to the room, or let everybody walk without one."""
         cue = self.truth.get_cue(code)
         shared = EVENT_SD * float(self.stream.standard_normal())
-        left_out = self.left_out.setdefault(code, set()) if code else set()
         parts = []
         for learner in here:
-            if learner.code in left_out:
-                continue
             part = note_practice(learner, cue, self.stream, PRACTICE_MINUTES)
             self.courses[learner.code].practise(cue, shared)
-            if learner.code in near_falls:
-                part = _mark_near_fall(part, near_falls[learner.code])
-                left_out.add(learner.code)
-            parts.append(part)
+            parts.append(mark_near_fall(part) if learner.code in near_falls else part)
         return parts
-
-    def _add_event(
-        self, draft: SessionDraft, parts: Sequence[DemoParticipation], code: str, event: str
-    ) -> None:
-        draft.add(
-            "acquisition",
-            TASK,
-            parts,
-            PRACTICE_MINUTES,
-            protocol=PROTOCOL,
-            cue=code or None,
-            chosen="planned",
-            event=event,
-        )
-
-
-def _mark_near_fall(part: DemoParticipation, stopped: bool) -> DemoParticipation:  # noqa: FBT001
-    part = replace(part, events=("near_fall",), observed="worse")
-    return replace(part, stop_reason="fall_or_near_fall", minutes=3.0) if stopped else part
 
 
 def build_larkspur(truth: Truth, seed: int) -> SettingPlan:
-    """Return six weekly hours, and the stands before them, week by week."""
+    """Return six weeks: the stands before the class, the class, the therapist's visits."""
     members = list_members(SETTING)
-    walking = _WalkingClass(
-        truth=truth,
-        facts=dict(truth.settings["larkspur"]),
-        members=members,
-        courses={one.code: Course(truth, TASK, one.code, seed) for one in members},
-        stream=open_stream(seed, "class", SETTING),
-    )
-    standing = StandingCorner(truth, seed, {one.code: one for one in members}, ASSISTANT)
+    learners = {one.code: one for one in members}
+    courses = {code: Course(truth, TASK, code, seed) for code in learners}
+    walking = _WalkingClass(truth, members, courses, open_stream(seed, "class", SETTING))
+    standing = StandingCorner(truth, seed, learners, ASSISTANT)
+    alone = GaitVisits(truth, seed, learners, courses, THERAPIST)
     sessions = []
     for week in range(truth.weeks):
         sessions += standing.stand(week, place_in_time(truth, week, CLASS_WEEKDAY, 9, 50))
         sessions.append(walking.meet(week))
+        sessions += alone.hold(week, place_in_time(truth, week, THERAPIST_WEEKDAY, 11))
     return SettingPlan(
         staff=(
             DemoStaff(TEACHER, SETTING, "teacher"),
             DemoStaff(ASSISTANT, SETTING, "assistant"),
+            DemoStaff(THERAPIST, SETTING, "therapist"),
         ),
         groups=(
             DemoGroup(
                 code=GROUP,
                 label="Larkspur Lane walking group",
                 setting=SETTING,
-                members=tuple(learner.code for learner in members),
+                members=tuple(learners),
                 joined_at=place_in_time(truth, 0, 0, 8),
             ),
         ),

@@ -13,9 +13,9 @@ from cuebook.jobs.demo.draft import (
     Recorder,
     SessionDraft,
     SettingPlan,
-    may_use_images,
     note_practice,
     place_in_time,
+    suits,
 )
 from cuebook.jobs.demo.people import DemoLearner, list_members
 from cuebook.jobs.demo.plan import (
@@ -84,7 +84,7 @@ class _Clinic:
         trap = next(c.code for c in self.truth.cues.values() if c.role == "regression_trap")
         therapist = Therapist(
             agenda=make_agenda(schedule, facts["teacher"], facts["asked"], stream),
-            trap_cue=trap if may_use_images(learner) else None,
+            trap_cue=trap if suits(learner, trap) else None,
             badly_below=facts["going_badly_below"],
             badly_share=facts["going_badly_share"],
             stream=stream,

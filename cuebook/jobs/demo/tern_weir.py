@@ -12,9 +12,9 @@ from cuebook.jobs.demo.draft import (
     Recorder,
     SessionDraft,
     SettingPlan,
-    may_use_images,
     note_practice,
     place_in_time,
+    suits,
 )
 from cuebook.jobs.demo.people import DemoLearner, list_members
 from cuebook.jobs.demo.plan import (
@@ -43,8 +43,6 @@ LANDING_PROTOCOL = {"box_height_cm": "20", "instrument": "front video", "footwea
 WEEKDAYS = (1, 3)
 MINUTES_EACH = 40
 PRACTICE_MINUTES = 8
-IMAGE_WEEKS = 2
-"""Before a profile says that images do not help, they are tried for so many weeks."""
 
 
 @dataclass(slots=True)
@@ -106,7 +104,7 @@ class _Shed:
     def _practise(self, draft: SessionDraft, rower: _Rower, course: Course, cue_code: str) -> None:
         cue = self.truth.get_cue(cue_code)
         part = note_practice(rower.learner, cue, rower.stream, PRACTICE_MINUTES)
-        if cue and not may_use_images(rower.learner) and course.visits < IMAGE_WEEKS:
+        if cue and not suits(rower.learner, cue.code):
             part = replace(part, reaction="confused", observed="none")
         course.practise(cue)
         draft.add(
