@@ -9,9 +9,10 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass, field, replace
+from functools import cache
 
 from cuebook.library.polarity import Polarity
-from cuebook.library.spelling import mend_slips
+from cuebook.library.spelling import Speller, load_plain_words
 from cuebook.vocabulary import load_vocabulary
 from cuebook.vocabulary.lay_words import (
     LayWords,
@@ -96,7 +97,7 @@ class _Evidence:
 def understand(problem: str, language: str = "en") -> Understanding:
     """Return what a problem in a teacher's own words is about; never raises on any text."""
     words = load_lay_words(language)
-    tokens = mend_slips(tokenise(problem, words.rules)[:_LONGEST], words)
+    tokens = build_speller(words.language).mend(tokenise(problem, words.rules)[:_LONGEST])
     polarity = Polarity(tokens, words)
     evidence, resolved = _weigh(tokens, words, polarity)
     tasks = _prefer_special(_score(evidence, "task", tokens))
@@ -112,6 +113,14 @@ def understand(problem: str, language: str = "en") -> Understanding:
         ),
         stems=frozenset(t.stem for t in tokens if t.word not in words.rules.light_words),
     )
+
+
+@cache
+def build_speller(language: str = "en") -> Speller:
+    """Return the speller for the lay words of a language; built once a process."""
+    words = load_lay_words(language)
+    plain = load_plain_words(words.language)
+    return Speller(words.known_words, words.index.prefixes, words.rules, plain)
 
 
 def _weigh(

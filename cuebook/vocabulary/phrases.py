@@ -3,18 +3,20 @@
 How a phrase is written: words with spaces between them, all of which must occur in one clause,
 near each other, in any order. ``a|b`` is one or the other; ``jerk*`` is any word that begins so;
 ``@small`` is any word of the list's group "small"; a leading ``>`` asks for the written order, as
-does the word "not" in it. Words are compared by their stems, so "step" also finds "steps".
+does the word "not" in it; a leading ``=`` also lets hardly a word stand between. Words are compared
+by their stems, so "step" also finds "steps".
 """
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 from cuebook.vocabulary.text import LanguageRules, Token, stem
 
 _ROOM = 4
 """Words that may stand between those of a phrase, light words not counted."""
+_TIGHT_ROOM = 1
 _SHORTEST_PREFIX = 2
 
 
@@ -39,11 +41,8 @@ class Phrase:
     text: str
     terms: tuple[Term, ...]
     is_ordered: bool
-
-    @property
-    def holds_not(self) -> bool:
-        """Return whether the phrase itself says "not"."""
-        return any("not" in term.stems for term in self.terms)
+    room: int = _ROOM
+    """Words that may stand between its own, light words not counted."""
 
 
 def parse_phrase(
@@ -51,7 +50,7 @@ def parse_phrase(
 ) -> Phrase:
     """Compile one written phrase; an unknown group raises KeyError (our own lists, tested)."""
     terms = []
-    for written in text.removeprefix(">").split():
+    for written in text.lstrip(">=").split():
         alternatives: list[str] = []
         for choice in written.split("|"):
             alternatives += groups[choice[1:]] if groups and choice.startswith("@") else [choice]
@@ -61,8 +60,9 @@ def parse_phrase(
                 tuple(word[:-1] for word in alternatives if word.endswith("*")),
             )
         )
-    is_ordered = text.startswith(">") or any("not" in term.stems for term in terms)
-    return Phrase(text, tuple(terms), is_ordered)
+    is_ordered = text.startswith((">", "=")) or any("not" in term.stems for term in terms)
+    room = _TIGHT_ROOM if text.startswith("=") else _ROOM
+    return Phrase(text, tuple(terms), is_ordered, room)
 
 
 def find_phrase(phrase: Phrase, tokens: Sequence[Token]) -> tuple[int, ...] | None:
@@ -70,13 +70,17 @@ def find_phrase(phrase: Phrase, tokens: Sequence[Token]) -> tuple[int, ...] | No
 
     The first narrow enough occurrence within one clause is taken.
     """
-    room = len(phrase.terms) - 1 + _ROOM
-    starts = [i for i, token in enumerate(tokens) if phrase.terms[0].fits(token)]
-    for start in starts:
-        found = _complete(phrase, tokens, start, room)
-        if found is not None:
-            return found
-    return None
+    return next(find_every(phrase, tokens), None)
+
+
+def find_every(phrase: Phrase, tokens: Sequence[Token]) -> Iterator[tuple[int, ...]]:
+    """Yield the places of each occurrence of a phrase, one for each token it may begin from."""
+    room = len(phrase.terms) - 1 + phrase.room
+    for start, token in enumerate(tokens):
+        if phrase.terms[0].fits(token):
+            found = _complete(phrase, tokens, start, room)
+            if found is not None:
+                yield found
 
 
 def _complete(
@@ -137,12 +141,6 @@ class PhraseIndex:
                 self._by_stem.setdefault(word, []).append(phrase)
             for prefix in rarest.prefixes:
                 self._by_prefix.setdefault(prefix, []).append(phrase)
-
-    def begins(self, word: str) -> bool:
-        """Return whether a word begins as some ``word*`` of the lists does."""
-        return any(
-            word[:length] in self.prefixes for length in range(_SHORTEST_PREFIX, len(word) + 1)
-        )
 
     def find(self, tokens: Sequence[Token]) -> list[tuple[Phrase, tuple[int, ...]]]:
         """Return each phrase that occurs, with the places of its words."""
