@@ -51,6 +51,7 @@ def test_no_module_grows_past_one_sitting() -> None:
         path
         for path in list_tracked_files()
         if path.endswith(".py")
+        and "/migrations/" not in path
         and len((ROOT / path).read_text(encoding="utf-8").splitlines()) > LONGEST_MODULE_LINES
     ]
     assert long == []

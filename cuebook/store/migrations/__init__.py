@@ -1,0 +1,1 @@
+"""Schema revisions; they travel inside the program."""

@@ -1,0 +1,1 @@
+"""The reading path: plain SQL, no table classes, light to load. It never writes."""

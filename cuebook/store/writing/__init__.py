@@ -1,0 +1,1 @@
+"""Write to a library: functions that take an open transaction and plain values."""

@@ -1,0 +1,256 @@
+"""Write learners, groups, consents, holds."""
+
+from __future__ import annotations
+
+import secrets
+from collections.abc import Iterable
+from datetime import datetime
+from importlib import resources
+
+from sqlmodel import Session, col, delete, select
+
+from cuebook.errors import InputError, UnknownCodeError
+from cuebook.store.keys import make_key
+from cuebook.store.stamps import LOCAL_STAFF, Stamp
+from cuebook.store.tables import people as tables
+from cuebook.store.tables.practice import Block, Participation
+from cuebook.store.tables.practice import Session as Meeting
+from cuebook.store.writing.revisions import count_evidence
+from cuebook.vocabulary import find_nearest
+
+
+def make_code(tx: Session) -> str:
+    """Return a code of two plain words that no learner or group has."""
+    words = (resources.files("cuebook.store") / "data" / "code_words.txt").read_text("utf-8")
+    firsts, seconds = (line.split() for line in words.splitlines()[:2])
+    taken = {*tx.exec(select(tables.Learner.code)), *tx.exec(select(tables.LearnerGroup.code))}
+    free = [
+        f"{first}-{second}"
+        for first in firsts
+        for second in seconds
+        if f"{first}-{second}" not in taken
+    ]
+    if not free:
+        raise InputError("All codes of two words are taken.", "Give a code of your own.")
+    return secrets.choice(free)
+
+
+def add_staff(tx: Session, code: str = LOCAL_STAFF, role: str = "") -> str:
+    """Add somebody who enters, if not there yet; return the code."""
+    if tx.exec(select(tables.Staff).where(tables.Staff.code == code)).first() is None:
+        tx.add(tables.Staff(id=make_key(), code=code, role=role))
+    return code
+
+
+def add_learner(
+    tx: Session,
+    stamp: Stamp,
+    code: str,
+    *,
+    age_band: str | None = None,
+    experience: str | None = None,
+    is_returning: bool = False,
+    language: str = "en",
+    backgrounds: Iterable[str] = (),
+    access_needs: Iterable[str] = (),
+    is_demo: bool = False,
+) -> str:
+    """Add a learner under a code; return the key.
+
+    Raises
+    ------
+    InputError : the code is taken.
+    """
+    _refuse_taken(tx, code)
+    key = make_key()
+    tx.add(
+        tables.Learner(
+            id=key,
+            code=code,
+            age_band=age_band,
+            experience=experience,
+            is_returning=is_returning,
+            language=language,
+            is_demo=is_demo,
+            **stamp.as_columns(),
+        )
+    )
+    tx.flush()
+    for background in dict.fromkeys(backgrounds):
+        tx.add(tables.LearnerBackground(learner_id=key, background=background))
+    for need in dict.fromkeys(access_needs):
+        tx.add(tables.LearnerNeed(learner_id=key, access_need=need))
+    return key
+
+
+def _refuse_taken(tx: Session, code: str) -> None:
+    for table in (tables.Learner, tables.LearnerGroup):
+        if tx.exec(select(table).where(table.code == code)).first() is not None:
+            raise InputError(f"The code '{code}' is taken.", "Give another, or none to get one.")
+
+
+def get_learner(tx: Session, code: str) -> tables.Learner:
+    """Return a learner's row, for use inside the transaction only.
+
+    Raises
+    ------
+    UnknownCodeError : no such learner; names the nearest.
+    """
+    found = tx.exec(select(tables.Learner).where(tables.Learner.code == code)).first()
+    if found is None:
+        raise describe_unknown_code("learner", code, tx.exec(select(tables.Learner.code)).all())
+    return found
+
+
+def get_group(tx: Session, code: str) -> tables.LearnerGroup:
+    """Return a group's row, for use inside the transaction only."""
+    found = tx.exec(select(tables.LearnerGroup).where(tables.LearnerGroup.code == code)).first()
+    if found is None:
+        known = tx.exec(select(tables.LearnerGroup.code)).all()
+        raise describe_unknown_code("group", code, known)
+    return found
+
+
+def describe_unknown_code(what: str, code: str, known: Iterable[str]) -> UnknownCodeError:
+    """Return the error for a code nobody has; it names the nearest known ones."""
+    nearest = find_nearest(code, known)
+    hint = f"Nearest known: {', '.join(nearest)}." if nearest else f"There is no {what} yet."
+    return UnknownCodeError(f"Unknown {what} '{code}'.", hint)
+
+
+def add_consent(
+    tx: Session,
+    stamp: Stamp,
+    learner_id: str,
+    item: str,
+    answer: str,
+    *,
+    given_by: str = "self",
+    how: str = "spoken",
+    assent: str = "not_applicable",
+) -> None:
+    """Note one answer; the newest counts. What evidence rests on may have changed."""
+    tx.add(
+        tables.Consent(
+            id=make_key(),
+            learner_id=learner_id,
+            item=item,
+            answer=answer,
+            given_by=given_by,
+            how=how,
+            assent=assent,
+            **stamp.as_columns(),
+        )
+    )
+    count_evidence(tx)
+
+
+def add_safety_note(
+    tx: Session,
+    stamp: Stamp,
+    learner_id: str,
+    *,
+    slug: str | None,
+    words: str = "",
+    is_hard: bool = False,
+    tasks: Iterable[str] = (),
+) -> None:
+    """Add a note on safety."""
+    tx.add(
+        tables.SafetyNote(
+            id=make_key(),
+            learner_id=learner_id,
+            slug=slug,
+            words=words,
+            is_hard=is_hard,
+            tasks=list(tasks),
+            **stamp.as_columns(),
+        )
+    )
+
+
+def add_holds(
+    tx: Session, stamp: Stamp, learner_id: str, tasks: Iterable[str], *, until: str, by_role: str
+) -> None:
+    """Put a learner on hold for tasks."""
+    for task in tasks:
+        tx.add(
+            tables.Hold(
+                id=make_key(),
+                learner_id=learner_id,
+                task=task,
+                until=until,
+                by_role=by_role,
+                **stamp.as_columns(),
+            )
+        )
+
+
+def clear_hold(tx: Session, stamp: Stamp, learner_id: str, task: str, *, cleared_by: str) -> int:
+    """Note who cleared the holds of a task; return how many there were."""
+    open_holds = tx.exec(
+        select(tables.Hold).where(
+            tables.Hold.learner_id == learner_id,
+            tables.Hold.task == task,
+            col(tables.Hold.cleared_at).is_(None),
+        )
+    ).all()
+    for hold in open_holds:
+        hold.cleared_at = stamp.occurred_at
+        hold.cleared_by = cleared_by
+        hold.revision += 1
+    return len(open_holds)
+
+
+def add_group(tx: Session, stamp: Stamp, code: str, label: str = "") -> str:
+    """Add a group if there is none of this code; return its key."""
+    found = tx.exec(select(tables.LearnerGroup).where(tables.LearnerGroup.code == code)).first()
+    if found is not None:
+        return found.id
+    _refuse_taken(tx, code)
+    key = make_key()
+    tx.add(tables.LearnerGroup(id=key, code=code, label=label, **stamp.as_columns()))
+    tx.flush()
+    return key
+
+
+def add_member(tx: Session, group_id: str, learner_id: str, joined_at: datetime) -> None:
+    """Put a learner into a group, if not in it now."""
+    if learner_id not in {member.id for member in list_members(tx, group_id, joined_at)}:
+        tx.add(
+            tables.Membership(
+                id=make_key(), group_id=group_id, learner_id=learner_id, joined_at=joined_at
+            )
+        )
+        tx.flush()
+
+
+def list_members(tx: Session, group_id: str, at: datetime | None = None) -> list[tables.Learner]:
+    """Return the learners of a group (at a time, if one is given) in the order of joining."""
+    query = (
+        select(tables.Learner, tables.Membership)
+        .join(tables.Membership, col(tables.Membership.learner_id) == tables.Learner.id)
+        .where(tables.Membership.group_id == group_id)
+        .order_by(col(tables.Membership.id))
+    )
+    rows = tx.exec(query).all()
+    return [
+        learner
+        for learner, membership in rows
+        if at is None or membership.left_at is None or membership.left_at > at
+    ]
+
+
+def erase_learner(tx: Session, learner_id: str) -> list[str]:
+    """Erase a learner with everything recorded; return the hashes of originals left unused."""
+    from cuebook.store.writing.recordings import drop_unused_originals  # noqa: PLC0415
+
+    # Sessions and blocks of a group stay: only this learner's part of them goes.
+    tx.exec(delete(Meeting).where(col(Meeting.learner_id) == learner_id))
+    tx.exec(delete(Participation).where(col(Participation.learner_id) == learner_id))
+    tx.exec(delete(tables.Learner).where(col(tables.Learner.id) == learner_id))
+    tx.flush()
+    empty = select(Block.id).where(~col(Block.id).in_(select(Participation.block_id)))
+    tx.exec(delete(Block).where(col(Block.id).in_(empty)))
+    count_evidence(tx)
+    return drop_unused_originals(tx)

@@ -1,0 +1,42 @@
+"""Keep the last ranking of a question, so that screens can show it at once."""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Mapping
+from datetime import datetime
+from typing import TYPE_CHECKING, Any
+
+from cuebook.store.tables.upkeep import RankingCache
+
+if TYPE_CHECKING:
+    from sqlmodel import Session
+
+
+def make_question_key(question: Mapping[str, object]) -> str:
+    """Return a question as canonical text: the key of its stored ranking."""
+    stated = {name: value for name, value in question.items() if value is not None}
+    return json.dumps(stated, sort_keys=True, separators=(",", ":"), ensure_ascii=False)
+
+
+def keep_ranking(
+    tx: Session,
+    question: Mapping[str, object],
+    document: Mapping[str, Any],
+    *,
+    evidence_revision: int,
+    engine: str,
+    n_uses: int,
+    made_at: datetime,
+) -> None:
+    """Replace the stored ranking of a question."""
+    tx.merge(
+        RankingCache(
+            question=make_question_key(question),
+            evidence_revision=evidence_revision,
+            engine=engine,
+            n_uses=n_uses,
+            made_at=made_at,
+            document=dict(document),
+        )
+    )
