@@ -6,17 +6,16 @@ from statistics import fmean, stdev
 
 import numpy as np
 import pytest
-from support.plain_metrics import (
-    compute_spectral_arc_length,
-    compute_speed,
-    compute_time_above,
-)
 
 from cuebook.jobs.demo.reach import RATE_HZ, ReachState, simulate_reach
 from cuebook.jobs.demo.streams import open_stream
 from cuebook.jobs.demo.strokes import StrokeState, simulate_strokes
 from cuebook.jobs.demo.sway import RATE_HZ as PLATE_RATE_HZ
 from cuebook.jobs.demo.sway import SwayState, simulate_sway
+from cuebook.metrics.discrete import compute_movement_time, compute_path_length, compute_sparc
+from cuebook.metrics.events import compute_interval_cv_pct
+from cuebook.metrics.profiles import compute_speed, cut_speed, detect_movement
+from cuebook.metrics.still import compute_sway_velocity
 
 REPEATS = 60
 SMOOTHNESS = [float(level) for level in range(-5, 6)]
@@ -30,16 +29,12 @@ def measure_reaches(state: ReachState, purpose: str) -> tuple[list[float], list[
         kernel = np.hanning(13) / np.hanning(13).sum()
         smooth_m = np.apply_along_axis(np.convolve, 0, position_m, kernel, "valid")
         speed = compute_speed(smooth_m, RATE_HZ)
-        arc_lengths.append(compute_spectral_arc_length(speed, RATE_HZ))
-        times_s.append(compute_time_above(speed, RATE_HZ))
+        window = detect_movement(speed, 0.05)
+        assert window is not None
+        assert window.is_whole
+        arc_lengths.append(compute_sparc(cut_speed(speed, window), RATE_HZ))
+        times_s.append(compute_movement_time(window, RATE_HZ))
     return arc_lengths, times_s
-
-
-def test_the_check_itself_gives_the_published_arc_length() -> None:
-    """Of exp(-5 t^2), t from -1 to 1, at 100 Hz: -1.41403 (the authors' published example)."""
-    time_s = np.arange(-1.0, 1.0, 0.01)
-    speed = np.exp(-5.0 * time_s**2)
-    assert compute_spectral_arc_length(speed, 100.0) == pytest.approx(-1.41403, abs=1e-5)
 
 
 @pytest.mark.parametrize("submovements", [3, 4])
@@ -86,7 +81,7 @@ def test_a_wider_bow_makes_a_longer_path() -> None:
     lengths_m = []
     for bow_m in (0.0, 0.02, 0.04, 0.06):
         _, position_m = simulate_reach(ReachState(0.0, 1.3, bow_m), open_stream(1, "bow"))
-        lengths_m.append(float(compute_speed(position_m, RATE_HZ).sum()))
+        lengths_m.append(compute_path_length(position_m))
     assert all(before < after for before, after in pairwise(lengths_m))
 
 
@@ -96,7 +91,7 @@ def test_sway_state_moves_sway_velocity_one_way() -> None:
     for velocity_mm_s in (8.0, 10.0, 12.5, 15.6, 19.5):
         state = SwayState(velocity_mm_s, 30.0)
         paths = [simulate_sway(state, open_stream(i, "sway"))[1][500:] for i in range(REPEATS)]
-        means.append(fmean(float(compute_speed(path, PLATE_RATE_HZ).mean()) for path in paths))
+        means.append(fmean(compute_sway_velocity(one, PLATE_RATE_HZ, "intervals") for one in paths))
     assert all(before < after for before, after in pairwise(means))
     assert 10.0 * means[2] == pytest.approx(12.5, rel=0.05)
 
@@ -107,7 +102,7 @@ def test_rhythm_state_moves_the_spread_of_intervals_one_way() -> None:
     for cv in (0.03, 0.04, 0.05, 0.065, 0.085):
         state = StrokeState(22.0, cv, 27)
         onsets = [simulate_strokes(state, open_stream(i, f"{cv}")) for i in range(200)]
-        found = [float(np.diff(one).std(ddof=1) / np.diff(one).mean()) for one in onsets]
+        found = [compute_interval_cv_pct(one).value for one in onsets]
         means.append(fmean(found))
         spreads.append(stdev([math.log(one) for one in found]))
     assert all(before < after for before, after in pairwise(means))
