@@ -5,10 +5,8 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from datetime import datetime
-from types import MappingProxyType
 
 Values = Mapping[str, tuple[float, ...]]
-_NOTHING: Values = MappingProxyType({})
 
 
 @dataclass(frozen=True, slots=True)
@@ -17,7 +15,7 @@ class LearnerNote:
 
     present: str = "present"
     """present, absent or not_observed."""
-    values: Values = field(default=_NOTHING)
+    values: Values = field(default_factory=dict)
     """Typed numbers per metric, one trial each, in the order they were made."""
     said: int | None = None
     """Times the cue was said; None: not counted."""

@@ -57,5 +57,5 @@ def compute_prediction_ellipse_area(position: FloatArray, form: str) -> float:
     if form == "f":
         m = n - 2
         point = (m / 2.0) * (0.05 ** (-2.0 / m) - 1.0)
-        return math.pi * root * point * 2.0 * (n - 1) * (n + 1) / (n * (n - 2))
+        return float(math.pi * root * point * 2.0 * (n - 1) * (n + 1) / (n * (n - 2)))
     return math.pi * root * (-2.0 * math.log(0.05))

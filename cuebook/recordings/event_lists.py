@@ -1,0 +1,105 @@
+"""Lists of events: onsets in seconds, taps and beats."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+
+import numpy as np
+
+from cuebook.errors import InputError, NeedsAnswerError, Place
+from cuebook.recordings.channels import EVENT_CHANNELS, describe_event_column, split_unit
+from cuebook.recordings.recording import FloatArray, ReadingOptions, Recording
+from cuebook.recordings.tables import TextTable
+from cuebook.recordings.units import require_factor
+from cuebook.vocabulary import find_nearest
+
+KIND_COLUMN = "trial_type"
+
+
+def find_event_columns(
+    table: TextTable, rule: ReadingOptions, *, expects_events: bool
+) -> dict[str, int]:
+    """Return which columns hold events; empty if the file is no list of events."""
+    if rule.columns:
+        named = {name: wanted for name, wanted in rule.columns.items() if name in EVENT_CHANNELS}
+        return {name: _find(table, wanted) for name, wanted in named.items()}
+    if table.has_header:
+        found = {
+            kind: column
+            for column, name in enumerate(table.names)
+            if (kind := describe_event_column(name)) is not None
+        }
+        if found:
+            return found
+    if expects_events and len(table.names) == 1:
+        return {"onset": 0}
+    return {}
+
+
+def _find(table: TextTable, wanted: str) -> int:
+    if wanted in table.names:
+        return table.names.index(wanted)
+    if wanted.isdigit() and 1 <= int(wanted) <= len(table.names):
+        return int(wanted) - 1
+    nearest = find_nearest(wanted, table.names)
+    raise NeedsAnswerError(
+        f"{table.file} has no column '{wanted}'.",
+        f"Nearest: {', '.join(nearest)}." if nearest else "Give its number.",
+        Place(file=table.file),
+    )
+
+
+def read_events(
+    table: TextTable, columns: Mapping[str, int], rule: ReadingOptions, file: str
+) -> Recording:
+    """Return the events of a file in seconds, each kind in order of time.
+
+    Raises
+    ------
+    InputError : text among numbers, or times that go back.
+    """
+    events: dict[str, FloatArray] = {}
+    notes = []
+    for kind, column in columns.items():
+        times = table.get_numbers(column)
+        unit = rule.units.get(kind) or rule.units.get("time") or split_unit(table.names[column])[1]
+        factor = require_factor("time", unit, kind) if unit else 1.0
+        if unit is None:
+            notes.append(f"time: column '{table.names[column]}' taken in s")
+        labels = _read_labels(table, kind)
+        for name in dict.fromkeys(labels):
+            chosen = np.array([label == name for label in labels])
+            events[name] = _order(times, chosen, table, column) * factor
+    if not any(times.size for times in events.values()):
+        raise InputError(f"{file} holds no event.", "Export it again.", Place(file=file))
+    return Recording(
+        file=file,
+        signals=(),
+        time_s=None,
+        rate_hz=None,
+        rate_source=None,
+        events=events,
+        notes=tuple(dict.fromkeys(notes)),
+    )
+
+
+def _read_labels(table: TextTable, kind: str) -> list[str]:
+    if kind == "onset" and KIND_COLUMN in table.names:
+        cells = table.get_cells(table.names.index(KIND_COLUMN))
+        return [cell.strip().lower() or "onset" for cell in cells]
+    return [kind] * table.n_rows
+
+
+def _order(times: FloatArray, chosen: np.ndarray, table: TextTable, column: int) -> FloatArray:
+    chosen &= ~np.isnan(times)
+    rows = np.flatnonzero(chosen)
+    kept = times[rows]
+    back = np.flatnonzero(np.diff(kept) < 0)
+    if back.size:
+        row = table.rows[int(rows[int(back[0]) + 1])]
+        raise InputError(
+            f"Time goes back at line {row} of {table.file}.",
+            "Sort the events by time.",
+            Place(table.file, row, table.names[column]),
+        )
+    return kept[np.append(True, np.diff(kept) > 0)] if kept.size else kept
