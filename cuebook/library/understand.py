@@ -99,19 +99,20 @@ def understand(problem: str, language: str = "en") -> Understanding:
     words = load_lay_words(language)
     tokens = build_speller(words.language).mend(tokenise(problem, words.rules)[:_LONGEST])
     polarity = Polarity(tokens, words)
+    light = words.rules.light_words
     evidence, resolved = _weigh(tokens, words, polarity)
-    tasks = _prefer_special(_score(evidence, "task", tokens))
-    features = _score(_bring_home(evidence, tasks), "feature", tokens)
+    tasks = _prefer_special(_score(evidence, "task", tokens, light))
+    features = _score(_bring_home(evidence, tasks), "feature", tokens, light)
     return Understanding(
         features=features,
-        regions=_score(evidence, "region", tokens),
+        regions=_score(evidence, "region", tokens, light),
         tasks=tasks,
         side=_find_side(tokens, words),
         rate_words=tuple(rate for rate, phrases in words.rates.items() if _occurs(phrases, tokens)),
         resolved=tuple(
             slug for slug in resolved if slug not in {feature.slug for feature in features}
         ),
-        stems=frozenset(t.stem for t in tokens if t.word not in words.rules.light_words),
+        stems=frozenset(t.stem for t in tokens if t.word not in light),
     )
 
 
@@ -210,7 +211,7 @@ def _bring_home(evidence: list[_Evidence], tasks: Sequence[Scored]) -> list[_Evi
 
 
 def _score(
-    evidence: Sequence[_Evidence], list_name: str, tokens: Sequence[Token]
+    evidence: Sequence[_Evidence], list_name: str, tokens: Sequence[Token], light: frozenset[str]
 ) -> tuple[Scored, ...]:
     """Combine the evidence for each slug of one list, surest first."""
     mine = [item for item in evidence if item.lead.list_name == list_name]
@@ -226,7 +227,7 @@ def _score(
                 doubt *= 1 - item.weight * (0.5 if item.places & used else 1.0)
                 used |= item.places
         if 1 - doubt >= _LEAST_SCORE:
-            said = tuple(tokens[i].word for i in sorted(used))
+            said = tuple(tokens[i].word for i in sorted(used) if tokens[i].word not in light)
             scored.append(Scored(slug, 1 - doubt, said))
     order = {slug: i for i, slug in enumerate(load_vocabulary().slugs(list_name))}
     return tuple(sorted(scored, key=lambda item: (-item.score, order[item.slug])))
