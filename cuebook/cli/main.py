@@ -16,6 +16,7 @@ from cuebook.errors import CuebookError, UsageError
 
 _COMMANDS: dict[str, tuple[str, str]] = {
     # name: (module below cuebook.cli that holds `command`, one line for --help)
+    "find": ("find", "Cues for a problem in your own words."),
     "measure": ("measure", "Metrics of a recording; nothing is stored."),
 }
 
