@@ -10,7 +10,8 @@ import click
 from cuebook.cli.common_options import with_common_options
 from cuebook.cli.output import print_json
 from cuebook.errors import NeedsAnswerError, UsageError
-from cuebook.jobs.find_cue import FoundCues, find_cue, to_document
+from cuebook.jobs.find_cue import FoundCues, to_document
+from cuebook.jobs.find_in_library import find_in_library
 from cuebook.library.lookup import Hit, Request
 from cuebook.library.person import Person
 from cuebook.vocabulary import load_vocabulary, require_slug
@@ -78,12 +79,8 @@ def _look_up(
     who: Person | None,
     request: Request,
 ) -> FoundCues:
-    """Look up in the seed sets; the library's own people are not read here yet."""
-    for option, given in (("--learner", learner), ("--group", group)):
-        if given:
-            raise UsageError(f"{option} is not available yet.", "Use --age and --background.")
-    del location
-    return find_cue(text, who=who, request=request)
+    """Look up with the library's people and cues, or in the seed sets where there is none."""
+    return find_in_library(location, text, learner=learner, group=group, who=who, request=request)
 
 
 def _describe_person(age: int | None, backgrounds: tuple[str, ...]) -> Person | None:

@@ -16,8 +16,18 @@ from cuebook.errors import CuebookError, UsageError
 
 _COMMANDS: dict[str, tuple[str, str]] = {
     # name: (module below cuebook.cli that holds `command`, one line for --help)
-    "find": ("find", "Cues for a problem in your own words."),
+    "demo": ("demo", "Build the invented demonstration library and print one ranking."),
+    "find": ("find", "Cues for a problem, in your own words."),
+    "learner": ("learner", "Add and show learners; note consents and holds."),
+    "group": ("group", "Add and show groups."),
+    "session": ("session", "List, show and end sessions."),
+    "log": ("log", "Log a block: which cue, with whom, what followed."),
+    "last": ("last", "The card for the next meeting."),
+    "import": ("take_in", "Take recordings in."),
     "measure": ("measure", "Metrics of a recording; nothing is stored."),
+    "metrics": ("metrics", "List the metrics; explain one."),
+    "cues": ("cues", "Export and import sets of cues."),
+    "review": ("review", "What shifted: rank cues for a question."),
 }
 
 

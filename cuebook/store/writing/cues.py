@@ -39,6 +39,11 @@ class CuesKept:
     unchanged: int
 
 
+def has_cues(tx: Session) -> bool:
+    """Return whether the library holds any cue."""
+    return tx.exec(select(tables.Cue.id).limit(1)).first() is not None
+
+
 def keep_cues(
     tx: Session, stamp: Stamp, cues: Iterable[library.Cue], set_code: str = ""
 ) -> CuesKept:

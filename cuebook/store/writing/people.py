@@ -202,6 +202,23 @@ def clear_hold(tx: Session, stamp: Stamp, learner_id: str, task: str, *, cleared
     return len(open_holds)
 
 
+def list_open_holds(
+    tx: Session, learner_ids: Iterable[str], task: str
+) -> list[tuple[str, str, str]]:
+    """Return (code, until, role that clears) of learners on hold for a task."""
+    query = (
+        select(tables.Learner.code, tables.Hold.until, tables.Hold.by_role)
+        .join(tables.Hold, col(tables.Hold.learner_id) == tables.Learner.id)
+        .where(
+            col(tables.Learner.id).in_(list(learner_ids)),
+            tables.Hold.task == task,
+            col(tables.Hold.cleared_at).is_(None),
+        )
+        .order_by(tables.Learner.code)
+    )
+    return [(code, until, by_role) for code, until, by_role in tx.exec(query).all()]
+
+
 def add_group(tx: Session, stamp: Stamp, code: str, label: str = "") -> str:
     """Add a group if there is none of this code; return its key."""
     found = tx.exec(select(tables.LearnerGroup).where(tables.LearnerGroup.code == code)).first()

@@ -78,6 +78,14 @@ def get_session(tx: Session, session_id: str) -> tables.Session:
     return found
 
 
+def get_block(tx: Session, block_id: str) -> tables.Block:
+    """Return a block's row, for use inside the transaction only."""
+    found = tx.get(tables.Block, block_id)
+    if found is None:
+        raise UnknownCodeError(f"Unknown block '{block_id}'.", "See: cuebook session show.")
+    return found
+
+
 def find_open_session(
     tx: Session,
     day_start: datetime,
