@@ -6,6 +6,9 @@ import math
 
 from cuebook.evidence.question import ReviewQuestion
 
+LARGEST_LOG = 700.0
+"""Beyond this the exponential has no number; no measure changes so much."""
+
 
 def get_direction(better: str) -> int:
     """Return -1 where a good change is a fall (of the value, or of the distance to a target)."""
@@ -32,7 +35,7 @@ def convert_effect(effect: float, question: ReviewQuestion, mean_before: float |
     if question.transform == "none":
         return own
     if question.transform == "log":
-        return 100 * math.expm1(own)
+        return 100 * math.expm1(min(own, LARGEST_LOG))
     if mean_before is None:
         return math.nan
     start = direction * mean_before

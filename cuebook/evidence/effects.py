@@ -41,7 +41,7 @@ def collect_effects(posterior: VariancePosterior, rows: FloatArray) -> EffectPos
     for _, solution in posterior.iterate_solutions():
         mean, covariance = compute_joint(posterior.layout, solution)
         means.append(rows @ mean)
-        variances.append(np.einsum("ki,ij,kj->k", rows, covariance, rows, optimize=True))
+        variances.append(((rows @ covariance) * rows).sum(axis=1))
     # A combination without any uncertainty (one cue against itself) still needs a spread above 0.
     tiny = np.finfo(float).tiny
     mixture = NormalMixture(

@@ -50,6 +50,10 @@ class NormalMixture:
             low, high = np.where(is_short, middle, low), np.where(is_short, high, middle)
         return np.asarray((low + high) / 2)
 
+    def pick(self, chosen: slice) -> NormalMixture:
+        """Return some of the quantities."""
+        return replace(self, means=self.means[:, chosen], variances=self.variances[:, chosen])
+
     def widen(self, variance: FloatArray | float) -> NormalMixture:
         """Return the mixture of the quantities plus independent normal errors."""
         return replace(self, variances=self.variances + variance)

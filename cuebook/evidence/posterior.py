@@ -32,6 +32,8 @@ ENOUGH_EFFECTIVE_POINTS = 20.0
 FREEDOM = 5.0
 SMALLEST_CURVATURE = 0.12
 _CURVATURE_STEP = 0.1
+_LEAST_RESIDUAL = 1e-4
+"""As a share of the spread; changes that fit perfectly are still no better known than this."""
 _NEGLIGIBLE_WEIGHT = 1e-6
 
 
@@ -164,6 +166,9 @@ class _Target:
         self.layout, self.prior, self.names, self.held = layout, prior, names, held
         all_names = layout.get_names()
         self.at = np.array([all_names.index(name) for name in names], dtype=np.intp)
+        least = 2 * np.log(_LEAST_RESIDUAL * prior.spread)
+        self.low = np.array([least if name == "residual" else -np.inf for name in names])
+        """Below it a log variance is not let: without any noise the system has no inverse."""
 
     def solve(self, log_variances: FloatArray) -> Solution:
         return solve_crossed(
@@ -192,7 +197,10 @@ class _Target:
             ]
         )
         # The prior holds the mode well inside; the bounds only keep a wild first step finite.
-        bounds = [(value - 40.0, value + 10.0) for value in start]
+        bounds = [
+            (max(value - 40.0, low), value + 10.0)
+            for value, low in zip(start, self.low, strict=True)
+        ]
         found = minimize(self.differentiate, start, jac=True, method="L-BFGS-B", bounds=bounds)
         return np.asarray(found.x, dtype=np.float64)
 
@@ -221,7 +229,7 @@ def _weigh_points(
 ) -> tuple[FloatArray, FloatArray]:
     """Return log variances and normalised importance weights."""
     steps = stdtrit(FREEDOM, compute_sobol_points(n_points, len(mode)))
-    points = mode + steps @ axes.T
+    points = np.maximum(mode + steps @ axes.T, target.low)
     log_proposal = -(FREEDOM + 1) / 2 * np.log1p(steps**2 / FREEDOM).sum(axis=1)
     log_weights = np.array([-target.evaluate(point) for point in points]) - log_proposal
     weights = np.exp(log_weights - log_weights.max())

@@ -8,7 +8,8 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
-from cuebook.evidence.question import HarmCount, ReviewQuestion
+from cuebook.evidence.question import ReviewQuestion
+from cuebook.practice.changes import HarmTally
 
 
 @dataclass(frozen=True, slots=True)
@@ -73,7 +74,6 @@ class CueResult:
     interval: Interval
     sd: float
     """Posterior SD with the bias allowance."""
-    effect_display: float
     p_better: float
     p_worthwhile: float
     p_worse: float
@@ -113,7 +113,8 @@ class CueResult:
     met: int
     stopped: int
     no_after: int
-    harms: HarmCount
+    harms: HarmTally
+    """Over all uses of the cue, measured or not."""
     watch: tuple[WatchLine, ...]
     marks: tuple[str, ...]
     """Among one_learner_only, rank_not_known, no_clear_best, in_tie_band."""

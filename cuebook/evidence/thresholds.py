@@ -13,6 +13,8 @@ from cuebook.evidence.result import DetectableChange, Worthwhile
 DEFAULT_SHARE = 0.2
 """Of the day-to-day spread of the learners' own level."""
 ENOUGH_CHANGES = 20
+SMALLEST_WORTHWHILE = 1e-12
+"""Where no change differs from another; an effect of 0 is not worthwhile even then."""
 WITHIN_SESSION = frozenset({"during", "immediate"})
 
 
@@ -22,6 +24,7 @@ def choose_worthwhile(
     n_changes: int,
     state_variance: float | None,
     within_variance: float | None,
+    sd_change: float,
     resolution: float | None,
 ) -> Worthwhile:
     """Return the smallest worthwhile difference on the transformed scale.
@@ -30,35 +33,50 @@ def choose_worthwhile(
     ----------
     state_variance : true within-learner variance of the state before (noise of attempts removed).
     within_variance : the same with the noise; either is None where visits are too few to tell.
+    sd_change : SD of the changes, which stands in where visits are too few.
     resolution : smallest step of the metric on the transformed scale; None: not known.
 
     Notes
     -----
     What the teacher set wins, then the registry's, then 0.2 of the day-to-day spread, at least the
-    resolution. Without any of these it is the smallest number above 0, which the note says.
+    resolution.
     """
     if question.worthwhile is not None:
         by = "set for this goal" if question.worthwhile_source == "teacher" else "of the registry"
         return Worthwhile(question.worthwhile, question.worthwhile_source, by)
     spread = math.sqrt(max(state_variance or 0.0, 0.25 * (within_variance or 0.0)))
-    value = max(DEFAULT_SHARE * spread, resolution or 0.0)
     note = "default, 0.2 of day-to-day spread; not a clinical threshold"
+    if spread == 0:
+        spread = sd_change
+        note = "default, 0.2 of the spread of the changes; not a clinical threshold"
     if n_changes < ENOUGH_CHANGES:
         note += f"; provisional until there are {ENOUGH_CHANGES} changes"
-    if value == 0:
-        return Worthwhile(math.ulp(0.0), "default", "no day-to-day spread is known yet")
+    value = max(DEFAULT_SHARE * spread, resolution or 0.0, SMALLEST_WORTHWHILE)
     return Worthwhile(value, "default", note)
 
 
-def convert_resolution(question: ReviewQuestion, mean_before: float | None) -> float | None:
-    """Return the metric's smallest step on the transformed scale, at the mean before-value."""
-    step = question.resolution
-    if step is None or question.transform == "none" or mean_before is None:
-        return step if question.transform == "none" else None
-    own = abs(mean_before)
+def convert_step(
+    step: float | None, question: ReviewQuestion, mean_before: float | None
+) -> float | None:
+    """Return a small step in the metric's own unit on the transformed scale.
+
+    Parameters
+    ----------
+    step : such as the resolution, or a difference that a teacher calls worthwhile.
+    mean_before : mean oriented before-value, at which a log or sqrt metric is stepped from.
+
+    Returns
+    -------
+    None where the step or the place it starts from is not known, and for logit metrics.
+    """
+    if step is None or question.transform == "none":
+        return step
+    if mean_before is None:
+        return None
+    own = mean_before if question.better == "higher" else -mean_before
     if question.transform == "log":
-        typical = math.exp(mean_before if question.better == "higher" else -mean_before)
-        return math.log1p(step / typical)
+        typical = question.target if question.better == "target" else math.exp(own)
+        return math.log1p(step / typical) if typical else None
     if question.transform == "sqrt":
         return step / (2 * max(own, math.sqrt(3 / 8)))
     return None

@@ -12,11 +12,12 @@ from hypothesis import strategies as st
 from cuebook.errors import UsageError
 from cuebook.evidence.display_scale import convert_effect, name_display_unit
 from cuebook.evidence.grades import GradeInput, grade_cue
+from cuebook.evidence.harms import count_harms, count_stopped, must_look
 from cuebook.evidence.parts import find_parts
-from cuebook.evidence.question import HarmCount, ReviewQuestion
+from cuebook.evidence.question import ReviewQuestion
 from cuebook.evidence.result import WatchLine
 from cuebook.evidence.still_needed import count_still_needed
-from cuebook.evidence.thresholds import choose_worthwhile, compute_detectable, convert_resolution
+from cuebook.evidence.thresholds import choose_worthwhile, compute_detectable, convert_step
 from cuebook.evidence.verdicts import (
     SIGNS,
     Verdict,
@@ -26,6 +27,7 @@ from cuebook.evidence.verdicts import (
     list_missing,
     soften_verdict,
 )
+from cuebook.practice.changes import HarmTally
 
 PLAIN = VerdictInput(
     learners=8,
@@ -224,6 +226,7 @@ def test_worthwhile_difference_is_taken_from_the_best_source() -> None:
         "n_changes": 30,
         "state_variance": 0.01,
         "within_variance": 0.09,
+        "sd_change": 0.7,
         "resolution": None,
     }
     by_teacher = choose_worthwhile(replace(LOWER_LOG, worthwhile=0.4), **given_facts)  # type: ignore[arg-type]
@@ -235,26 +238,30 @@ def test_worthwhile_difference_is_taken_from_the_best_source() -> None:
     assert stepped.value == 0.05
     early = choose_worthwhile(LOWER_LOG, **{**given_facts, "n_changes": 19})  # type: ignore[arg-type]
     assert "provisional" in early.note
+    unknown = {**given_facts, "state_variance": None, "within_variance": None}
+    assert choose_worthwhile(LOWER_LOG, **unknown).value == pytest.approx(0.14)  # type: ignore[arg-type]
 
 
 def test_resolution_follows_the_scale() -> None:
     """A step of 0.01 s at 2 s is half a per cent on the log scale."""
-    question = replace(LOWER_LOG, resolution=0.01)
-    assert convert_resolution(question, -math.log(2)) == pytest.approx(math.log1p(0.005))
-    assert convert_resolution(replace(question, transform="none"), None) == 0.01
-    assert convert_resolution(question, None) is None
+    assert convert_step(0.01, LOWER_LOG, -math.log(2)) == pytest.approx(math.log1p(0.005))
+    assert convert_step(0.01, replace(LOWER_LOG, transform="none"), None) == 0.01
+    assert convert_step(0.01, LOWER_LOG, None) is None
+    # sqrt(y + 1) - sqrt(y) is about 1 / (2 sqrt(y)).
+    counted = replace(LOWER_LOG, transform="sqrt", better="higher")
+    assert convert_step(1.0, counted, 10.0) == pytest.approx(0.05)
 
 
 def test_harms_are_counted_and_a_planned_end_is_none() -> None:
     """Only stops that may lie with the cue count; a fall or two of a kind call for a look."""
-    planned = HarmCount(10, stops={"planned_end": 6, "equipment": 2})
-    assert (planned.stopped, planned.total, planned.must_look()) == (0, 0, False)
-    assert HarmCount(10, stops={"pain": 2}).must_look()
-    assert not HarmCount(10, stops={"pain": 1, "dizzy": 1}).must_look()
-    assert HarmCount(5, stops={"pain": 1, "dizzy": 1}).must_look()
-    assert HarmCount(10, events={"fall": 1}).must_look()
-    assert HarmCount(10, stops={"fall_or_near_fall": 1}, events={"fall": 1}).total == 1
-    assert HarmCount(10, events={"near_fall": 2, "tired": 3}, pain_up=1).total == 3
+    planned = HarmTally(10, stops={"planned_end": 6, "equipment": 2})
+    assert (count_stopped(planned), count_harms(planned), must_look(planned)) == (0, 0, False)
+    assert must_look(HarmTally(10, stops={"pain": 2}))
+    assert not must_look(HarmTally(10, stops={"pain": 1, "dizzy": 1}))
+    assert must_look(HarmTally(5, stops={"pain": 1, "dizzy": 1}))
+    assert must_look(HarmTally(10, events={"fall": 1}))
+    assert count_harms(HarmTally(10, stops={"fall_or_near_fall": 1}, events={"fall": 1})) == 1
+    assert count_harms(HarmTally(10, events={"near_fall": 2, "tired": 3, "pain_up": 1})) == 3
 
 
 @pytest.mark.parametrize(
