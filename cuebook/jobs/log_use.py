@@ -50,11 +50,9 @@ def log_before_after(
 ) -> Logged:
     """Log baseline, practice and the measure straight after, in one transaction."""
     middle = replace(entry, phase="acquisition")
-    shared = {"cue": None, "wording": None, "except_codes": (), "chosen": "planned"}
-    first = replace(entry, phase="baseline", note=LearnerNote(values=before), notes={}, **shared)
-    last = replace(
-        entry, phase="immediate_post", note=LearnerNote(values=after), notes={}, **shared
-    )
+    measured = replace(entry, cue=None, wording=None, except_codes=(), notes={})
+    first = replace(measured, phase="baseline", note=LearnerNote(values=before))
+    last = replace(measured, phase="immediate_post", note=LearnerNote(values=after))
     blocks = [middle]
     if before:
         blocks.insert(0, first)

@@ -68,7 +68,7 @@ _TABLE_HEAD = (
 
 def _describe_cue(cue: Mapping[str, Any], document: Mapping[str, Any]) -> str:
     del document
-    words = str(cue.get("words") or "")
+    words = str(cue.get("first_words") or "")
     if len(words) > WORDS_WIDTH:
         words = words[: WORDS_WIDTH - 1].rstrip() + "…"
     interval = f"{format_number(cue['low95'])} to {format_number(cue['high95'])}"
@@ -77,7 +77,7 @@ def _describe_cue(cue: Mapping[str, Any], document: Mapping[str, Any]) -> str:
     return (
         f"{cue.get('sign') or '?':<4}{cue['cue']:<24}{words:<{WORDS_WIDTH + 1}}"
         f"{format_number(cue['effect']):>8}  {interval:<18}{chance:>6}  {counts:<14}"
-        f"{cue.get('chosen_by') or '':<14}{cue.get('verdict_words') or cue['verdict']}"
+        f"{cue.get('grade_words') or '':<14}{cue.get('words') or cue['verdict']}"
     )
 
 

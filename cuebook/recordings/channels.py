@@ -35,23 +35,25 @@ _EVENT_NAMES = {
 }
 _IN_BRACKETS = re.compile(r"^(.*?)\s*[\[(]([^\])]*)[\])]\s*$")
 _CAMEL = re.compile(r"(?<=[a-z])(?=[A-Z])")
-_STEMS = (
-    ("centreofpressure", PRESSURE_CENTRE),
-    ("centerofpressure", PRESSURE_CENTRE),
-    ("cop", PRESSURE_CENTRE),
-    ("accel", ACCELERATION),
-    ("acc", ACCELERATION),
-    ("gyro", ANGULAR_SPEED),
-    ("gyr", ANGULAR_SPEED),
-    ("speed", SPEED),
-    ("velocity", SPEED),
-    ("vel", SPEED),
-    ("force", FORCE),
-    ("grf", FORCE),
-    ("moment", MOMENT),
-    ("torque", MOMENT),
-    ("angle", ANGLE),
-)
+_WORDS = {
+    "cop": PRESSURE_CENTRE,
+    "acc": ACCELERATION,
+    "accel": ACCELERATION,
+    "acceleration": ACCELERATION,
+    "accelerometer": ACCELERATION,
+    "gyr": ANGULAR_SPEED,
+    "gyro": ANGULAR_SPEED,
+    "gyroscope": ANGULAR_SPEED,
+    "speed": SPEED,
+    "vel": SPEED,
+    "velocity": SPEED,
+    "force": FORCE,
+    "grf": FORCE,
+    "moment": MOMENT,
+    "torque": MOMENT,
+    "angle": ANGLE,
+}
+_PRESSURE_WORDS = ("centre", "center")
 _QUANTITY_OF_UNIT_KIND = (
     ("length", POSITION),
     ("acceleration", ACCELERATION),
@@ -102,7 +104,9 @@ def describe_column(name: str, column: int) -> Channel:
         return Channel(name, column, TIME, unit=unit)
     axis, rest = _find_axis(words)
     stem = "".join(rest)
-    quantity = next((found for key, found in _STEMS if key in stem), None)
+    quantity = next((_WORDS[word] for word in rest if word in _WORDS), None)
+    if "pressure" in rest and any(word in rest for word in _PRESSURE_WORDS):
+        quantity = PRESSURE_CENTRE
     if quantity is None and axis is not None and stem in {"f", "m"}:
         quantity = FORCE if stem == "f" else MOMENT
     if quantity is None and unit is not None:
@@ -111,7 +115,8 @@ def describe_column(name: str, column: int) -> Channel:
             None,
         )
     if quantity is None:
-        quantity = POSITION if axis is not None and len(stem) != 1 else UNKNOWN
+        is_place = axis is not None and len(stem) != 1 and unit is None
+        quantity = POSITION if is_place else UNKNOWN
     return Channel(name, column, quantity, axis, unit, "_".join(rest))
 
 
