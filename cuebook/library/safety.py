@@ -88,35 +88,44 @@ def check_safety(text: str, language: str = "en") -> SafetyAnswer | None:
 def _find_action(danger: _Danger, tokens: Sequence[Token], guard: _Guard) -> str | None:
     """Return the action a danger calls for in a text; None if no sign of it counts."""
     actions = []
+    excused: dict[int, bool] = {}
     for sign in danger.signs:
-        clauses = _find_sign(sign, tokens, guard)
-        if not clauses or any(_is_excused(danger, clause, tokens) for clause in clauses):
-            continue
-        is_past = all(_occurs_in(guard.history, clause, tokens) for clause in clauses)
-        actions.append(danger.past_action if is_past else danger.action)
+        clauses = _find_sign(sign, danger, tokens, guard, excused)
+        if clauses:
+            spoken = [[t for t in tokens if t.clause == clause] for clause in clauses]
+            is_past = all(_occurs(guard.history, clause) for clause in spoken)
+            actions.append(danger.past_action if is_past else danger.action)
     order = load_vocabulary().slugs("safety_action")
     return min(actions, key=order.index, default=None)
 
 
-def _find_sign(sign: tuple[Phrase, ...], tokens: Sequence[Token], guard: _Guard) -> set[int]:
-    """Return the clauses in which the phrases of a sign stand; none unless all are there."""
+def _find_sign(
+    sign: tuple[Phrase, ...],
+    danger: _Danger,
+    tokens: Sequence[Token],
+    guard: _Guard,
+    excused: dict[int, bool],
+) -> set[int]:
+    """Return the clauses in which the phrases of a sign count; none unless all of them do.
+
+    A phrase counts where it is neither denied nor said in a part that takes the danger back; a
+    later part may say it after all.
+    """
     clauses: set[int] = set()
     for phrase in sign:
-        places = _find_undenied(phrase, tokens, guard)
-        if places is None:
+        for places in find_every(phrase, tokens):
+            if _is_denied(places, tokens, guard):
+                continue
+            part = tokens[places[0]].part
+            if part not in excused:
+                mine = [token for token in tokens if token.part == part]
+                excused[part] = _occurs(danger.unless, mine)
+            if not excused[part]:
+                clauses.add(tokens[places[0]].clause)
+                break
+        else:
             return set()
-        clauses.add(tokens[places[0]].clause)
     return clauses
-
-
-def _find_undenied(
-    phrase: Phrase, tokens: Sequence[Token], guard: _Guard
-) -> tuple[int, ...] | None:
-    """Return where a phrase stands without being denied; a later clause may say it after all."""
-    for places in find_every(phrase, tokens):
-        if not _is_denied(places, tokens, guard):
-            return places
-    return None
 
 
 def _is_denied(places: Sequence[int], tokens: Sequence[Token], guard: _Guard) -> bool:
@@ -132,13 +141,8 @@ def _is_denied(places: Sequence[int], tokens: Sequence[Token], guard: _Guard) ->
     return False
 
 
-def _is_excused(danger: _Danger, clause: int, tokens: Sequence[Token]) -> bool:
-    return _occurs_in(danger.unless, clause, tokens)
-
-
-def _occurs_in(phrases: Sequence[Phrase], clause: int, tokens: Sequence[Token]) -> bool:
-    mine = [token for token in tokens if token.clause == clause]
-    return any(find_phrase(phrase, mine) is not None for phrase in phrases)
+def _occurs(phrases: Sequence[Phrase], tokens: Sequence[Token]) -> bool:
+    return any(find_phrase(phrase, tokens) is not None for phrase in phrases)
 
 
 @cache

@@ -1,11 +1,19 @@
 from __future__ import annotations
 
 import json
+from pathlib import Path
 
 import pytest
 
 from cuebook.cli.exit_codes import ExitCode
 from cuebook.cli.main import run
+
+
+@pytest.fixture(autouse=True)
+def _no_library(monkeypatch: pytest.MonkeyPatch, tmp_path: Path) -> None:
+    """Search the seed sets, whatever library the user of this machine has."""
+    monkeypatch.setenv("CUEBOOK_LIBRARY", str(tmp_path / "none"))
+
 
 SMALL_STEPS = "Takes tiny steps and shuffles down the corridor"
 

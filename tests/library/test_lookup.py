@@ -28,7 +28,7 @@ def find(
 
 
 def test_small_steps_find_the_three_cues_for_them() -> None:
-    """The sentence of the first issue finds image, rule and sister image first."""
+    """Tiny shuffling steps find image, rule and sister image first."""
     codes = [hit.cue.code for hit in find_cues(SMALL_STEPS, INDEX)]
     assert set(codes[:3]) == {"paving-slab-stride", "floor-tile-stride", "long-step-heel-first"}
 

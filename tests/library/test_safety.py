@@ -62,11 +62,25 @@ DANGERS = [sentence for sentence, action in GIVEN + OWN if action == "stop_emerg
 HARMLESS = [sentence for sentence, action in OWN if action == "none"]
 
 
-@given(st.sampled_from(DANGERS), st.sampled_from(HARMLESS), st.booleans())
-def test_the_clause_with_the_danger_wins(danger: str, harmless: str, is_first: bool) -> None:  # noqa: FBT001
+@given(st.sampled_from(DANGERS), st.sampled_from(HARMLESS))
+def test_the_clause_with_the_danger_wins(danger: str, harmless: str) -> None:
     """A harmless sentence before or after an emergency never takes it back."""
-    text = f"{danger}. {harmless}" if is_first else f"{harmless}, but {danger}"
-    assert get_action(text) == "stop_emergency"
+    assert get_action(f"{danger}. {harmless}") == "stop_emergency"
+    assert get_action(f"{harmless}, but {danger}") == "stop_emergency"
+
+
+DENYING = ("No ", "Denies ", "He has never ")
+
+
+@given(
+    st.sampled_from(DANGERS),
+    st.sampled_from([sentence for sentence in HARMLESS if not sentence.startswith(DENYING)]),
+    st.sampled_from([" and ", ", and ", ", "]),
+)
+def test_a_danger_wins_within_one_clause_too(danger: str, harmless: str, join: str) -> None:
+    """Joined by "and" or a comma only, the danger still decides."""
+    assert get_action(danger + join + harmless) == "stop_emergency"
+    assert get_action(harmless + join + danger) == "stop_emergency"
 
 
 @pytest.mark.parametrize(

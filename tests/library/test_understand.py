@@ -51,7 +51,7 @@ def test_most_problems_lead_to_the_right_task() -> None:
 
 
 def test_small_steps_are_about_step_length_in_walking() -> None:
-    """The sentence of the first issue is understood: step length first, walking first."""
+    """Tiny shuffling steps are understood: step length first, walking first."""
     understood = understand("Takes tiny steps and shuffles down the corridor")
     assert understood.features[0].slug == "step_length"
     assert understood.tasks[0].slug == "walking"
