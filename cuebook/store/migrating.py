@@ -2,16 +2,19 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
+from contextlib import contextmanager
 from typing import TYPE_CHECKING
 
 from cuebook.errors import StoreUnavailableError
+from cuebook.store.schema import HEAD_REVISION
 
 if TYPE_CHECKING:
     from alembic.config import Config
-    from sqlalchemy import Connection
+    from sqlalchemy import Connection, Engine
 
-HEAD_REVISION = "0001"
-"""The newest revision this program knows; a test holds it to the scripts."""
+NOTHING = "base"
+"""The revision of a database without any table of ours."""
 
 
 def make_config(connection: Connection) -> Config:
@@ -34,31 +37,43 @@ def read_revision(connection: Connection) -> str | None:
 
 
 def migrate(connection: Connection, revision: str = HEAD_REVISION) -> None:
-    """Bring the schema to a revision, up or down, inside the caller's transaction.
-
-    The caller has switched foreign keys off outside the transaction: rebuilding a parent table
-    would otherwise delete its children without a word.
-    """
+    """Bring the schema to a revision, up or down, inside the caller's transaction."""
     from alembic import command  # noqa: PLC0415
 
     config = make_config(connection)
-    stored = read_revision(connection)
-    if stored is not None and stored > revision:
-        command.downgrade(config, revision)
-    else:
-        command.upgrade(config, revision)
+    stored = read_revision(connection) or ""
+    is_down = revision == NOTHING or stored > revision
+    (command.downgrade if is_down else command.upgrade)(config, revision)
 
 
-def refuse_newer(stored: str | None) -> None:
-    """Refuse a library that a newer program has written.
+def migrate_safely(engine: Engine, revision: str = HEAD_REVISION) -> None:
+    """Bring the schema to a revision in one transaction: wholly, or not at all.
 
     Raises
     ------
-    StoreUnavailableError : the stored revision is not one this program knows.
+    StoreUnavailableError : rows would have been left without their owner.
     """
-    if stored is not None and stored > HEAD_REVISION:
-        raise StoreUnavailableError(
-            f"This library was written by a newer Cuebook (schema {stored}; "
-            f"this program knows {HEAD_REVISION}).",
-            "Update the program; nothing was changed.",
-        )
+    with engine.connect() as connection, _foreign_keys_off(connection), connection.begin():
+        migrate(connection, revision)
+        broken = connection.exec_driver_sql("PRAGMA foreign_key_check").fetchall()
+        if broken:
+            raise StoreUnavailableError(
+                f"The upgrade would have left {len(broken)} rows without their owner.",
+                "Nothing was changed. Please report this.",
+            )
+
+
+@contextmanager
+def _foreign_keys_off(connection: Connection) -> Iterator[None]:
+    """Switch foreign keys off outside any transaction, where alone SQLite heeds it.
+
+    Rebuilding a parent table with them on would delete its children without a word.
+    """
+    raw = connection.connection.driver_connection
+    if raw is None:  # pragma: no cover - a closed connection
+        raise StoreUnavailableError("The library was closed while being upgraded.")
+    raw.execute("PRAGMA foreign_keys = OFF")
+    try:
+        yield
+    finally:
+        raw.execute("PRAGMA foreign_keys = ON")

@@ -1,22 +1,24 @@
-"""Open a library: its folder, its engine, its schema."""
+"""Open a library for writing: its folder, its engine, its schema."""
 
 from __future__ import annotations
 
 import os
 import sqlite3
 from collections.abc import Iterator
-from contextlib import contextmanager
+from contextlib import closing, contextmanager
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, Self
 
-from cuebook.errors import StoreUnavailableError
+from cuebook.errors import CuebookError, InputError, StoreUnavailableError
 from cuebook.store.places import DATABASE_NAME, resolve_location
+from cuebook.store.schema import HEAD_REVISION, describe_damage, explain_failure, refuse_newer
 
 if TYPE_CHECKING:
     from sqlalchemy import Connection, Engine
     from sqlmodel import Session
 
 BUSY_TIMEOUT_MS = 10_000
+_COPY_PREFIX = "before-upgrade-from-"
 
 
 class Library:
@@ -25,6 +27,11 @@ class Library:
     def __init__(self, folder: Path, engine: Engine) -> None:
         self.folder = folder
         self.engine = engine
+
+    @property
+    def database(self) -> Path:
+        """Return the database file."""
+        return self.folder / DATABASE_NAME
 
     @property
     def originals(self) -> Path:
@@ -37,16 +44,36 @@ class Library:
 
         Raises
         ------
+        InputError : an entry that the tables do not allow.
         StoreUnavailableError : the library is busy, full, read-only or damaged.
         """
-        from sqlalchemy.exc import DatabaseError  # noqa: PLC0415
+        from sqlalchemy.exc import DatabaseError, IntegrityError, StatementError  # noqa: PLC0415
         from sqlmodel import Session  # noqa: PLC0415
 
         try:
             with Session(self.engine, expire_on_commit=False) as session, session.begin():
                 yield session
+        except IntegrityError as error:
+            raise InputError(
+                f"The library does not allow this entry: {error.orig}.", "Nothing was stored."
+            ) from error
         except DatabaseError as error:
-            raise explain_failure(error.orig, self.folder) from error
+            raise explain_failure(error.orig, self.database) from error
+        except StatementError as error:
+            # What a column type refused comes wrapped.
+            if isinstance(error.orig, CuebookError):
+                raise error.orig from error
+            raise
+
+    def scrub(self) -> None:
+        """Leave no erased row behind: not in the write-ahead log, not in copies kept by upgrades.
+
+        The database file itself holds none, because pages are overwritten when rows go.
+        """
+        with closing(self.engine.raw_connection()) as connection:
+            connection.cursor().execute("PRAGMA wal_checkpoint(TRUNCATE)")
+        for copy in self.folder.glob(f"{_COPY_PREFIX}*.sqlite3"):
+            copy.unlink()
 
     def close(self) -> None:
         """Let go of the database."""
@@ -68,37 +95,36 @@ def open_library(location: str | Path | None = None, *, create: bool = True) -> 
     """
     folder = resolve_location(location)
     database = folder / DATABASE_NAME
-    is_new = not database.exists()
-    if is_new and not create:
+    if not create and not database.exists():
         raise StoreUnavailableError(
             f"There is no library in {folder}.", "Name another folder with --library."
         )
-    _prepare_folder(folder)
-    engine = _make_engine(database)
+    _prepare_files(folder)
+    library = Library(folder, _make_engine(database))
     try:
-        _bring_up_to_date(engine, folder)
-    except sqlite3.DatabaseError as error:
-        raise explain_failure(error, folder) from error
-    except Exception as error:
-        original = getattr(error, "orig", None)
-        if isinstance(original, sqlite3.DatabaseError):
-            raise explain_failure(original, folder) from error
+        _bring_up_to_date(library)
+    except BaseException as error:
+        library.close()
+        reason = getattr(error, "orig", error)
+        if isinstance(reason, sqlite3.DatabaseError):
+            raise explain_failure(reason, database) from error
         raise
-    if is_new:
-        database.chmod(0o600)
-    return Library(folder, engine)
+    return library
 
 
-def _prepare_folder(folder: Path) -> None:
+def _prepare_files(folder: Path) -> None:
+    """Make what is missing, readable by the owner only; leave alone what is there."""
     try:
-        folder.mkdir(parents=True, exist_ok=True)
-        (folder / "originals").mkdir(exist_ok=True)
-        for made in (folder, folder / "originals"):
-            if made.stat().st_uid == os.getuid():
-                made.chmod(0o700)  # readable by the owner only
-    except (FileExistsError, NotADirectoryError) as error:
+        for needed in (folder, folder / "originals"):
+            if not needed.is_dir():
+                needed.mkdir(parents=True, exist_ok=True)
+                needed.chmod(0o700)
+        # Made before SQLite sees it, because its companions take over the file's permissions.
+        os.close(os.open(folder / DATABASE_NAME, os.O_RDWR | os.O_CREAT, 0o600))
+    except (FileExistsError, NotADirectoryError, IsADirectoryError) as error:
         raise StoreUnavailableError(
-            f"{folder} is a file, not a folder.", "Name a folder with --library."
+            f"There can be no library in {folder}: something else has that name.",
+            "Name another folder with --library.",
         ) from error
     except OSError as error:
         raise StoreUnavailableError(
@@ -108,9 +134,9 @@ def _prepare_folder(folder: Path) -> None:
 
 
 def _make_engine(database: Path) -> Engine:
-    from sqlalchemy import create_engine, event  # noqa: PLC0415
+    from sqlalchemy import URL, create_engine, event  # noqa: PLC0415
 
-    engine = create_engine(f"sqlite:///{database}")
+    engine = create_engine(URL.create("sqlite", database=str(database)))
 
     def set_up(connection: Any, _record: Any) -> None:
         # The driver must not open transactions by itself: BEGIN IMMEDIATE below does.
@@ -119,6 +145,8 @@ def _make_engine(database: Path) -> Engine:
         connection.execute("PRAGMA journal_mode = WAL")
         connection.execute("PRAGMA synchronous = FULL")
         connection.execute("PRAGMA foreign_keys = ON")
+        # A learner who is erased must not be left in pages that are merely marked free.
+        connection.execute("PRAGMA secure_delete = ON")
 
     def begin(connection: Connection) -> None:
         # Immediate: a deferred transaction that later writes fails at once under contention.
@@ -129,76 +157,41 @@ def _make_engine(database: Path) -> Engine:
     return engine
 
 
-def _bring_up_to_date(engine: Engine, folder: Path) -> None:
-    from cuebook.store.migrating import (  # noqa: PLC0415
-        HEAD_REVISION,
-        migrate,
-        read_revision,
-        refuse_newer,
-    )
+def _bring_up_to_date(library: Library) -> None:
+    stored = _read_revision(library.engine, library.database)
+    refuse_newer(stored)
+    if stored == HEAD_REVISION:
+        return
+    from cuebook.store.migrating import migrate_safely  # noqa: PLC0415
 
-    with engine.connect() as connection:
-        stored = read_revision(connection)
-        connection.rollback()
-        refuse_newer(stored)
-        if stored == HEAD_REVISION:
-            return
-        if stored is not None:
-            _keep_copy(folder, stored)
-        upgrade_safely(connection, migrate)
+    if stored is not None:
+        _keep_copy(library.folder, stored)
+    migrate_safely(library.engine)
 
 
-def upgrade_safely(connection: Connection, migrate: Any, *arguments: Any) -> None:
-    """Run a migration with foreign keys off, then check every one of them."""
-    connection.exec_driver_sql("PRAGMA foreign_keys = OFF")
-    connection.rollback()  # leave the transaction that the pragma opened
-    raw = connection.connection.driver_connection
-    if raw is None:  # pragma: no cover - a closed connection
-        raise StoreUnavailableError("The library was closed while being upgraded.")
-    raw.execute("PRAGMA foreign_keys = OFF")
-    try:
-        with connection.begin():
-            migrate(connection, *arguments)
-            broken = connection.exec_driver_sql("PRAGMA foreign_key_check").fetchall()
-            if broken:
-                raise StoreUnavailableError(
-                    f"The upgrade would have left {len(broken)} rows without their owner.",
-                    "Nothing was changed. Please report this.",
-                )
-    finally:
-        raw.execute("PRAGMA foreign_keys = ON")
+def _read_revision(engine: Engine, database: Path) -> str | None:
+    """Return the stored revision, by plain SQL; None for an empty database."""
+    with closing(engine.raw_connection()) as connection:
+        cursor = connection.cursor()
+        cursor.execute("SELECT name FROM sqlite_schema WHERE type = 'table'")
+        names = {name for (name,) in cursor.fetchall()}
+        if not names:
+            return None
+        if "alembic_version" not in names:
+            raise describe_damage(database)
+        cursor.execute("SELECT version_num FROM alembic_version")
+        row = cursor.fetchone()
+    if row is None:
+        raise describe_damage(database)
+    return str(row[0])
 
 
 def _keep_copy(folder: Path, stored: str) -> None:
     """Copy the database as it is before it is upgraded."""
-    source = sqlite3.connect(folder / DATABASE_NAME)
-    target = sqlite3.connect(folder / f"before-upgrade-from-{stored}.sqlite3")
-    try:
+    path = folder / f"{_COPY_PREFIX}{stored}.sqlite3"
+    os.close(os.open(path, os.O_RDWR | os.O_CREAT, 0o600))
+    with (
+        closing(sqlite3.connect(folder / DATABASE_NAME)) as source,
+        closing(sqlite3.connect(path)) as target,
+    ):
         source.backup(target)
-    finally:
-        source.close()
-        target.close()
-
-
-def explain_failure(error: BaseException | None, folder: Path) -> StoreUnavailableError:
-    """Return plain words for what SQLite said."""
-    said = str(error)
-    place = f"the library in {folder}"
-    if "locked" in said or "busy" in said:
-        return StoreUnavailableError(
-            f"Another program is writing to {place}.", "Nothing was stored; try again."
-        )
-    if "not a database" in said or "malformed" in said or "no such table" in said:
-        return StoreUnavailableError(
-            f"The file {folder / DATABASE_NAME} is not a library, or is damaged.",
-            "Nothing was changed. Restore a backup, or name another folder with --library.",
-        )
-    if "readonly" in said or "unable to open" in said:
-        return StoreUnavailableError(
-            f"Nothing can be written to {place}.", "Check who owns the folder, and the disk."
-        )
-    if "full" in said:
-        return StoreUnavailableError(
-            f"The disk of {place} is full.", "Nothing was stored; make room and try again."
-        )
-    return StoreUnavailableError(f"The store refused this entry: {said}.", "Nothing was stored.")

@@ -38,4 +38,9 @@ def resolve_location(location: str | Path | None) -> Path:
 
 def has_library(location: str | Path | None) -> bool:
     """Return whether there is a library at a location."""
-    return (resolve_location(location) / DATABASE_NAME).is_file()
+    return is_database(resolve_location(location) / DATABASE_NAME)
+
+
+def is_database(path: Path) -> bool:
+    """Return whether a file is there and not empty, as one cut off at its very start would be."""
+    return path.is_file() and path.stat().st_size > 0

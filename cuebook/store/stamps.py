@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
-import time
 from dataclasses import dataclass
 from datetime import UTC, datetime
 from typing import Any
+
+from cuebook.store.moments import require_zone
+from cuebook.store.zones import name_zone
 
 LOCAL_STAFF = "local"
 """Code of the only staff member of a library on one machine."""
@@ -38,14 +40,5 @@ def make_stamp(
 ) -> Stamp:
     """Return a stamp; without a time it happened now."""
     now = entered_at or datetime.now(UTC)
-    moment = occurred_at or now.astimezone()
-    return Stamp(moment, _name_zone(moment), now, entered_by)
-
-
-def _name_zone(moment: datetime) -> str:
-    """Return the zone's name from the tz database where known, else its offset."""
-    zone = moment.tzinfo
-    key = getattr(zone, "key", None)
-    if key:
-        return str(key)
-    return moment.tzname() or time.tzname[0]
+    moment = require_zone(occurred_at or now.astimezone())
+    return Stamp(moment, name_zone(moment), now, entered_by)

@@ -6,10 +6,10 @@ from typing import Any, Literal
 
 from alembic import context
 
-from cuebook.store.column_types import Document, Key, Moment, Number, Words
+from cuebook.store.column_types import Document, Flag, Key, Moment, Number, Whole, Words
 from cuebook.store.tables import metadata
 
-_OWN_TYPES = (Document, Key, Moment, Number, Words)
+_OWN_TYPES = (Document, Flag, Key, Moment, Number, Whole, Words)
 
 
 def render_own_type(kind: str, item: Any, autogen_context: Any) -> str | Literal[False]:

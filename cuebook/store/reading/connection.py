@@ -4,72 +4,64 @@ from __future__ import annotations
 
 import sqlite3
 from collections.abc import Iterator
-from contextlib import contextmanager
+from contextlib import closing, contextmanager
 from pathlib import Path
 
 from cuebook.errors import StoreUnavailableError
-from cuebook.store.places import DATABASE_NAME, resolve_location
-
-NEWEST_KNOWN = "0001"
-"""The newest schema this reading path understands; a test holds it to the migrations."""
+from cuebook.store.places import DATABASE_NAME, is_database, resolve_location
+from cuebook.store.schema import HEAD_REVISION, describe_damage, explain_failure, refuse_newer
 
 _BUSY_TIMEOUT_S = 10.0
 
 
 @contextmanager
 def open_for_reading(location: str | Path | None) -> Iterator[sqlite3.Connection]:
-    """Give a read-only connection to a library.
+    """Give a read-only connection that shows one state of the library until it is closed.
+
+    A library of an older program is brought up to date first.
 
     Raises
     ------
-    StoreUnavailableError : no library there, not a library, older or newer than this program.
+    StoreUnavailableError : no library there, not a library, or newer than this program.
     """
-    folder = resolve_location(location)
-    database = folder / DATABASE_NAME
-    if not database.is_file():
+    database = resolve_location(location) / DATABASE_NAME
+    if not is_database(database):
         raise StoreUnavailableError(
-            f"There is no library in {folder}.",
+            f"There is no library in {database.parent}.",
             "Add a learner to start one, see the demonstration with cuebook demo, "
             "or name another folder with --library.",
         )
+    try:
+        if _read_revision(database) != HEAD_REVISION:
+            _upgrade(database)
+        with closing(_connect(database)) as connection:
+            connection.execute("BEGIN")  # all that is read belongs to one moment
+            yield connection
+    except sqlite3.DatabaseError as error:
+        raise explain_failure(error, database) from error
+
+
+def _connect(database: Path) -> sqlite3.Connection:
     connection = sqlite3.connect(
-        f"{database.resolve().as_uri()}?mode=ro", uri=True, timeout=_BUSY_TIMEOUT_S
+        f"{database.resolve().as_uri()}?mode=ro",
+        uri=True,
+        timeout=_BUSY_TIMEOUT_S,
+        isolation_level=None,
     )
     connection.row_factory = sqlite3.Row
-    try:
-        _check_revision(connection, database)
-        yield connection
-    except sqlite3.DatabaseError as error:
-        raise _explain(error, database) from error
-    finally:
-        connection.close()
+    return connection
 
 
-def _check_revision(connection: sqlite3.Connection, database: Path) -> None:
-    row = connection.execute("SELECT version_num FROM alembic_version").fetchone()
+def _read_revision(database: Path) -> str:
+    with closing(_connect(database)) as connection:
+        row = connection.execute("SELECT version_num FROM alembic_version").fetchone()
     if row is None:
-        raise StoreUnavailableError(
-            f"The file {database} is not a library, or is damaged.",
-            "Restore a backup, or name another folder with --library.",
-        )
-    if row[0] > NEWEST_KNOWN:
-        raise StoreUnavailableError(
-            f"This library was written by a newer Cuebook (schema {row[0]}; "
-            f"this program knows {NEWEST_KNOWN}).",
-            "Update the program; nothing was changed.",
-        )
+        raise describe_damage(database)
+    refuse_newer(str(row[0]))
+    return str(row[0])
 
 
-def _explain(error: sqlite3.DatabaseError, database: Path) -> StoreUnavailableError:
-    if "locked" in str(error) or "busy" in str(error):
-        return StoreUnavailableError(
-            f"Another program is writing to the library in {database.parent}.", "Try again."
-        )
-    if "unable to open" in str(error) or "readonly" in str(error):
-        return StoreUnavailableError(
-            f"The library in {database.parent} cannot be read.", "Check who owns the folder."
-        )
-    return StoreUnavailableError(
-        f"The file {database} is not a library, or is damaged.",
-        "Restore a backup, or name another folder with --library.",
-    )
+def _upgrade(database: Path) -> None:
+    from cuebook.store.opening import open_library  # noqa: PLC0415
+
+    open_library(database.parent).close()

@@ -13,8 +13,7 @@ SELECT id, code, kind, focus, pair, sister_of, status, problem, cycle, rate_low,
 FROM cue ORDER BY id
 """
 _WORDINGS = """
-SELECT cue_id, text, language, revision, replaces FROM wording
-ORDER BY cue_id, language, revision
+SELECT cue_id, text, language, revision, replaces FROM wording ORDER BY cue_id, id
 """
 _CLAIMS = "SELECT cue_id, feature, says FROM claim ORDER BY cue_id, place"
 _TAGS = "SELECT cue_id, kind, word FROM cue_tag ORDER BY cue_id, kind, place"

@@ -5,7 +5,7 @@ from datetime import datetime
 from sqlalchemy import CheckConstraint
 from sqlmodel import Field, SQLModel
 
-from cuebook.store.column_types import Key, Moment, Words
+from cuebook.store.column_types import Key, Moment, Whole, Words
 
 # Set before any table: constraints must have names, or later revisions cannot change them.
 SQLModel.metadata.naming_convention = {
@@ -30,12 +30,17 @@ def flag(column: str) -> CheckConstraint:
     return CheckConstraint(f"{column} IN (0, 1)", name=column)
 
 
-class Entered(SQLModel):
-    """A row a user enters."""
+class Stamped(SQLModel):
+    """Who entered a row, when it happened and when it was entered."""
 
-    id: str = Field(primary_key=True, sa_type=Key)
     entered_by: str = Field(sa_type=Words)
     entered_at: datetime = Field(sa_type=Moment)
     occurred_at: datetime = Field(sa_type=Moment)
     occurred_zone: str = Field(sa_type=Words)
-    revision: int = Field(default=1)
+    revision: int = Field(default=1, sa_type=Whole)
+
+
+class Entered(Stamped):
+    """A row a user enters, under a key made by the client."""
+
+    id: str = Field(primary_key=True, sa_type=Key)

@@ -5,9 +5,9 @@ from typing import ClassVar
 from sqlalchemy import UniqueConstraint
 from sqlmodel import Field, SQLModel
 
-from cuebook.store.column_types import Key, Number, Words
+from cuebook.store.column_types import Key, Number, Whole, Words
 from cuebook.store.tables.base import STRICT, Entered, one_of
-from cuebook.store.words import CLAIM_WORDS, FOCUSES, KINDS, STATUSES
+from cuebook.store.words import CLAIM_WORDS, CYCLES, FOCUSES, KINDS, STATUSES
 
 TAG_KINDS = (
     "task",
@@ -29,6 +29,7 @@ class Cue(Entered, table=True):
         one_of("kind", KINDS),
         one_of("focus", FOCUSES),
         one_of("status", STATUSES),
+        one_of("cycle", CYCLES),
         STRICT,
     )
     code: str = Field(sa_type=Words)
@@ -42,8 +43,8 @@ class Cue(Entered, table=True):
     cycle: str | None = Field(default=None, sa_type=Words)
     rate_low: float | None = Field(default=None, sa_type=Number)
     rate_high: float | None = Field(default=None, sa_type=Number)
-    age_low: int | None = None
-    age_high: int | None = None
+    age_low: int | None = Field(default=None, sa_type=Whole)
+    age_high: int | None = Field(default=None, sa_type=Whole)
     captures: str = Field(default="", sa_type=Words)
     leaves_out: str = Field(default="", sa_type=Words)
     caution: str = Field(default="", sa_type=Words)
@@ -59,7 +60,7 @@ class Wording(Entered, table=True):
     cue_id: str = Field(sa_type=Key, foreign_key="cue.id", ondelete="CASCADE")
     text: str = Field(sa_type=Words)
     language: str = Field(default="en", sa_type=Words)
-    replaces: int | None = None
+    replaces: int | None = Field(default=None, sa_type=Whole)
 
 
 class Claim(SQLModel, table=True):
@@ -70,7 +71,7 @@ class Claim(SQLModel, table=True):
     cue_id: str = Field(primary_key=True, sa_type=Key, foreign_key="cue.id", ondelete="CASCADE")
     feature: str = Field(primary_key=True, sa_type=Words)
     says: str = Field(sa_type=Words)
-    place: int = 0
+    place: int = Field(default=0, sa_type=Whole)
 
 
 class CueTag(SQLModel, table=True):
@@ -81,15 +82,14 @@ class CueTag(SQLModel, table=True):
     cue_id: str = Field(primary_key=True, sa_type=Key, foreign_key="cue.id", ondelete="CASCADE")
     kind: str = Field(primary_key=True, sa_type=Words)
     word: str = Field(primary_key=True, sa_type=Words)
-    place: int = 0
+    place: int = Field(default=0, sa_type=Whole)
 
 
-class ProblemPhrase(SQLModel, table=True):
+class ProblemPhrase(Entered, table=True):
     """A way in which people have put the problem."""
 
     __tablename__: ClassVar[str] = "problem_phrase"
     __table_args__ = (UniqueConstraint("cue_id", "place"), STRICT)
-    id: str = Field(primary_key=True, sa_type=Key)
     cue_id: str = Field(sa_type=Key, foreign_key="cue.id", ondelete="CASCADE")
     phrase: str = Field(sa_type=Words)
-    place: int = 0
+    place: int = Field(default=0, sa_type=Whole)

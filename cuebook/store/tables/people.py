@@ -4,9 +4,9 @@ from datetime import datetime
 from typing import ClassVar
 
 from sqlalchemy import CheckConstraint, UniqueConstraint
-from sqlmodel import Field, SQLModel
+from sqlmodel import Field
 
-from cuebook.store.column_types import Document, Key, Moment, Number, Words
+from cuebook.store.column_types import Document, Flag, Key, Moment, Number, Words
 from cuebook.store.tables.base import STRICT, Entered, flag, one_of
 from cuebook.store.words import (
     AGE_BANDS,
@@ -15,16 +15,18 @@ from cuebook.store.words import (
     CONSENT_GIVERS,
     CONSENT_ITEMS,
     CONSENT_WAYS,
+    DIRECTIONS,
     EXPERIENCES,
+    GOAL_STATUSES,
+    SAFETY_ACTIONS,
 )
 
 
-class Staff(SQLModel, table=True):
+class Staff(Entered, table=True):
     """Somebody who teaches or enters."""
 
     __tablename__: ClassVar[str] = "staff"
     __table_args__ = (UniqueConstraint("code"), STRICT)
-    id: str = Field(primary_key=True, sa_type=Key)
     code: str = Field(sa_type=Words)
     role: str = Field(default="", sa_type=Words)
 
@@ -44,41 +46,35 @@ class Learner(Entered, table=True):
     code: str = Field(sa_type=Words)
     age_band: str | None = Field(default=None, sa_type=Words)
     experience: str | None = Field(default=None, sa_type=Words)
-    is_returning: bool = False
+    is_returning: bool = Field(default=False, sa_type=Flag)
     language: str = Field(default="en", sa_type=Words)
-    is_demo: bool = False
+    is_demo: bool = Field(default=False, sa_type=Flag)
 
 
-class LearnerBackground(SQLModel, table=True):
+class LearnerBackground(Entered, table=True):
     """Work or leisure a learner knows."""
 
     __tablename__: ClassVar[str] = "learner_background"
-    __table_args__ = (STRICT,)
-    learner_id: str = Field(
-        primary_key=True, sa_type=Key, foreign_key="learner.id", ondelete="CASCADE"
-    )
-    background: str = Field(primary_key=True, sa_type=Words)
+    __table_args__ = (UniqueConstraint("learner_id", "background"), STRICT)
+    learner_id: str = Field(sa_type=Key, foreign_key="learner.id", ondelete="CASCADE")
+    background: str = Field(sa_type=Words)
 
 
-class LearnerNeed(SQLModel, table=True):
+class LearnerNeed(Entered, table=True):
     """An access need of a learner."""
 
     __tablename__: ClassVar[str] = "learner_need"
-    __table_args__ = (STRICT,)
-    learner_id: str = Field(
-        primary_key=True, sa_type=Key, foreign_key="learner.id", ondelete="CASCADE"
-    )
-    access_need: str = Field(primary_key=True, sa_type=Words)
+    __table_args__ = (UniqueConstraint("learner_id", "access_need"), STRICT)
+    learner_id: str = Field(sa_type=Key, foreign_key="learner.id", ondelete="CASCADE")
+    access_need: str = Field(sa_type=Words)
 
 
-class LocalName(SQLModel, table=True):
+class LocalName(Entered, table=True):
     """A name on this machine only: never exported, reported or shown in a shared view."""
 
     __tablename__: ClassVar[str] = "local_name"
-    __table_args__ = (STRICT,)
-    learner_id: str = Field(
-        primary_key=True, sa_type=Key, foreign_key="learner.id", ondelete="CASCADE"
-    )
+    __table_args__ = (UniqueConstraint("learner_id"), STRICT)
+    learner_id: str = Field(sa_type=Key, foreign_key="learner.id", ondelete="CASCADE")
     name: str = Field(sa_type=Words)
 
 
@@ -103,16 +99,18 @@ class Consent(Entered, table=True):
 
 
 class SafetyNote(Entered, table=True):
-    """A note on safety: hard ones bar cues, soft ones are shown."""
+    """A note on safety: hard ones bar cues, soft ones are shown; an action is shown once."""
 
     __tablename__: ClassVar[str] = "safety_note"
-    __table_args__ = (flag("is_hard"), STRICT)
+    __table_args__ = (flag("is_hard"), one_of("show_once", SAFETY_ACTIONS), STRICT)
     learner_id: str = Field(sa_type=Key, foreign_key="learner.id", ondelete="CASCADE", index=True)
     slug: str | None = Field(default=None, sa_type=Words)
     words: str = Field(default="", sa_type=Words)
-    is_hard: bool = False
+    is_hard: bool = Field(default=False, sa_type=Flag)
     tasks: list[str] = Field(default_factory=list, sa_type=Document)
     features: list[str] = Field(default_factory=list, sa_type=Document)
+    show_once: str | None = Field(default=None, sa_type=Words)
+    shown_at: datetime | None = Field(default=None, sa_type=Moment)
 
 
 class Hold(Entered, table=True):
@@ -137,12 +135,11 @@ class LearnerGroup(Entered, table=True):
     label: str = Field(default="", sa_type=Words)
 
 
-class Membership(SQLModel, table=True):
+class Membership(Entered, table=True):
     """Who belongs to a group, from when to when."""
 
     __tablename__: ClassVar[str] = "membership"
     __table_args__ = (STRICT,)
-    id: str = Field(primary_key=True, sa_type=Key)
     group_id: str = Field(
         sa_type=Key, foreign_key="learner_group.id", ondelete="CASCADE", index=True
     )
@@ -157,8 +154,8 @@ class Goal(Entered, table=True):
     __tablename__: ClassVar[str] = "goal"
     __table_args__ = (
         CheckConstraint("(learner_id IS NULL) != (group_id IS NULL)", name="whose"),
-        one_of("status", ("active", "on_hold", "reached", "dropped")),
-        one_of("direction", ("higher", "lower", "target")),
+        one_of("status", GOAL_STATUSES),
+        one_of("direction", DIRECTIONS),
         STRICT,
     )
     learner_id: str | None = Field(
@@ -169,6 +166,7 @@ class Goal(Entered, table=True):
     )
     words: str = Field(default="", sa_type=Words)
     status: str = Field(default="active", sa_type=Words)
+    icf: str | None = Field(default=None, sa_type=Words)
     task: str = Field(sa_type=Words)
     feature: str | None = Field(default=None, sa_type=Words)
     metric: str | None = Field(default=None, sa_type=Words)

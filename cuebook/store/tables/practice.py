@@ -6,10 +6,12 @@ from typing import ClassVar
 from sqlalchemy import CheckConstraint, UniqueConstraint
 from sqlmodel import Field, SQLModel
 
-from cuebook.store.column_types import Document, Key, Moment, Number, Words
-from cuebook.store.tables.base import STRICT, Entered, flag, one_of
+from cuebook.store.column_types import Document, Flag, Key, Moment, Number, Whole, Words
+from cuebook.store.tables.base import STRICT, Entered, Stamped, flag, one_of
 from cuebook.store.words import (
     CHOSEN,
+    CYCLES,
+    DELIVERIES,
     EVENTS,
     OBSERVED,
     OTHERS,
@@ -47,8 +49,8 @@ class Session(Entered, table=True):
         default=None, sa_type=Key, foreign_key="learner_group.id", ondelete="CASCADE", index=True
     )
     ended_at: datetime | None = Field(default=None, sa_type=Moment)
-    is_date_only: bool = False
-    do_not_use: bool = False
+    is_date_only: bool = Field(default=False, sa_type=Flag)
+    do_not_use: bool = Field(default=False, sa_type=Flag)
 
 
 class Block(Entered, table=True):
@@ -61,24 +63,28 @@ class Block(Entered, table=True):
         one_of("side", SIDES),
         one_of("others", OTHERS),
         one_of("chosen", CHOSEN),
+        one_of("cycle", CYCLES),
+        one_of("delivery", DELIVERIES),
         CheckConstraint("wording_id IS NULL OR phase = 'acquisition'", name="cue_in_practice"),
         CheckConstraint("number >= 1", name="number"),
         STRICT,
     )
     session_id: str = Field(sa_type=Key, foreign_key="session.id", ondelete="CASCADE")
-    number: int
+    number: int = Field(sa_type=Whole)
     phase: str = Field(sa_type=Words)
     task: str = Field(sa_type=Words)
     side: str | None = Field(default=None, sa_type=Words)
     tempo: float | None = Field(default=None, sa_type=Number)
     cycle: str | None = Field(default=None, sa_type=Words)
     protocol_id: str | None = Field(default=None, sa_type=Key, foreign_key="protocol.id")
-    wording_id: str | None = Field(default=None, sa_type=Key, foreign_key="wording.id")
+    wording_id: str | None = Field(default=None, sa_type=Key, foreign_key="wording.id", index=True)
     others: str = Field(default="none", sa_type=Words)
     chosen: str | None = Field(default=None, sa_type=Words)
     delivery: str | None = Field(default=None, sa_type=Words)
     event_id: str | None = Field(default=None, sa_type=Key)
-    slot_id: str | None = Field(default=None, sa_type=Key, foreign_key="slot.id")
+    slot_id: str | None = Field(
+        default=None, sa_type=Key, foreign_key="slot.id", ondelete="SET NULL", index=True
+    )
     cue_entered_at: datetime = Field(sa_type=Moment)
 
 
@@ -100,7 +106,7 @@ class Participation(Entered, table=True):
     checks: dict[str, str] = Field(default_factory=dict, sa_type=Document)
 
 
-class Use(SQLModel, table=True):
+class Use(Stamped, table=True):
     """A participation in practice: what was said to whom, and what followed."""
 
     __tablename__: ClassVar[str] = "use"
@@ -110,14 +116,15 @@ class Use(SQLModel, table=True):
         one_of("stop_reason", STOPS),
         CheckConstraint("times_said >= 0", name="times_said"),
         CheckConstraint("attempts >= 0", name="attempts"),
+        CheckConstraint("minutes >= 0", name="minutes"),
         STRICT,
     )
     participation_id: str = Field(
         primary_key=True, sa_type=Key, foreign_key="participation.id", ondelete="CASCADE"
     )
     learner_id: str = Field(sa_type=Key, foreign_key="learner.id", ondelete="CASCADE", index=True)
-    times_said: int | None = None
-    attempts: int | None = None
+    times_said: int | None = Field(default=None, sa_type=Whole)
+    attempts: int | None = Field(default=None, sa_type=Whole)
     minutes: float | None = Field(default=None, sa_type=Number)
     observed: str | None = Field(default=None, sa_type=Words)
     reaction: str | None = Field(default=None, sa_type=Words)
@@ -150,8 +157,8 @@ class Trial(Entered, table=True):
     )
     participation_id: str = Field(sa_type=Key, foreign_key="participation.id", ondelete="CASCADE")
     learner_id: str = Field(sa_type=Key, foreign_key="learner.id", ondelete="CASCADE", index=True)
-    number: int
-    is_valid: bool = True
+    number: int = Field(sa_type=Whole)
+    is_valid: bool = Field(default=True, sa_type=Flag)
 
 
 class Schedule(Entered, table=True):
@@ -170,7 +177,7 @@ class Schedule(Entered, table=True):
     )
     task: str = Field(sa_type=Words)
     rule: str = Field(sa_type=Words)
-    seed: int
+    seed: int = Field(sa_type=Whole)
     arms: list[str | None] = Field(default_factory=list, sa_type=Document)
 
 
@@ -181,5 +188,8 @@ class Slot(SQLModel, table=True):
     __table_args__ = (UniqueConstraint("schedule_id", "place"), STRICT)
     id: str = Field(primary_key=True, sa_type=Key)
     schedule_id: str = Field(sa_type=Key, foreign_key="schedule.id", ondelete="CASCADE")
-    place: int
+    learner_id: str | None = Field(
+        default=None, sa_type=Key, foreign_key="learner.id", ondelete="CASCADE", index=True
+    )
+    place: int = Field(sa_type=Whole)
     cue: str | None = Field(default=None, sa_type=Words)

@@ -5,12 +5,16 @@ from typing import Any, ClassVar
 from sqlalchemy import CheckConstraint, UniqueConstraint
 from sqlmodel import Field, SQLModel
 
-from cuebook.store.column_types import Document, Key, Number, Words
+from cuebook.store.column_types import Document, Flag, Key, Number, Whole, Words
 from cuebook.store.tables.base import STRICT, Entered, flag
 
 
 class Original(Entered, table=True):
-    """The unchanged bytes of an imported file; they lie in the folder beside the database."""
+    """The unchanged bytes of an imported file; they lie in the folder beside the database.
+
+    ``unblanked_sha256`` is the hash of the file as it came, if header fields that seemed to name
+    somebody were blanked before it was kept.
+    """
 
     __tablename__: ClassVar[str] = "original"
     __table_args__ = (
@@ -19,7 +23,8 @@ class Original(Entered, table=True):
         STRICT,
     )
     sha256: str = Field(sa_type=Words)
-    size_bytes: int
+    size_bytes: int = Field(sa_type=Whole)
+    unblanked_sha256: str | None = Field(default=None, sa_type=Words)
 
 
 class Recording(Entered, table=True):
@@ -33,13 +38,13 @@ class Recording(Entered, table=True):
     )
     original_id: str = Field(sa_type=Key, foreign_key="original.id")
     learner_id: str = Field(sa_type=Key, foreign_key="learner.id", ondelete="CASCADE", index=True)
-    block_id: str = Field(sa_type=Key, foreign_key="block.id", ondelete="CASCADE")
+    block_id: str = Field(sa_type=Key, foreign_key="block.id", ondelete="CASCADE", index=True)
     person: str = Field(default="", sa_type=Words)
     rule: dict[str, Any] = Field(default_factory=dict, sa_type=Document)
     rule_digest: str = Field(sa_type=Words)
     rate_hz: float | None = Field(default=None, sa_type=Number)
     duration_s: float | None = Field(default=None, sa_type=Number)
-    is_current: bool = True
+    is_current: bool = Field(default=True, sa_type=Flag)
 
 
 class TrialRecording(SQLModel, table=True):
@@ -49,8 +54,9 @@ class TrialRecording(SQLModel, table=True):
     __table_args__ = (STRICT,)
     trial_id: str = Field(primary_key=True, sa_type=Key, foreign_key="trial.id", ondelete="CASCADE")
     recording_id: str = Field(
-        primary_key=True, sa_type=Key, foreign_key="recording.id", ondelete="CASCADE"
+        primary_key=True, sa_type=Key, foreign_key="recording.id", ondelete="CASCADE", index=True
     )
+    learner_id: str = Field(sa_type=Key, foreign_key="learner.id", ondelete="CASCADE", index=True)
     segment: str = Field(default="", sa_type=Words)
 
 
@@ -81,6 +87,6 @@ class Measurement(SQLModel, table=True):
     learner_id: str = Field(sa_type=Key, foreign_key="learner.id", ondelete="CASCADE", index=True)
     value: float | None = Field(default=None, sa_type=Number)
     reason: str | None = Field(default=None, sa_type=Words)
-    n_used: int = 1
+    n_used: int = Field(default=1, sa_type=Whole)
     flags: list[str] = Field(default_factory=list, sa_type=Document)
     quality: dict[str, Any] = Field(default_factory=dict, sa_type=Document)

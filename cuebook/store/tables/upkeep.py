@@ -1,11 +1,11 @@
-"""Tables of upkeep: corrections, drafts, counters, stored rankings, settings."""
+"""Tables of upkeep: corrections, drafts, counters, stored rankings."""
 
 from datetime import datetime
 from typing import Any, ClassVar
 
 from sqlmodel import Field, SQLModel
 
-from cuebook.store.column_types import Document, Key, Moment, Words
+from cuebook.store.column_types import Document, Key, Moment, Whole, Words
 from cuebook.store.tables.base import STRICT, Entered, one_of
 
 COUNTED = ("cues", "evidence")
@@ -33,6 +33,9 @@ class Draft(SQLModel, table=True):
     __tablename__: ClassVar[str] = "draft"
     __table_args__ = (STRICT,)
     place: str = Field(primary_key=True, sa_type=Words)
+    learner_id: str | None = Field(
+        default=None, sa_type=Key, foreign_key="learner.id", ondelete="CASCADE", index=True
+    )
     content: Any = Field(default=None, sa_type=Document)
     saved_at: datetime = Field(sa_type=Moment)
 
@@ -43,7 +46,7 @@ class LibraryRevision(SQLModel, table=True):
     __tablename__: ClassVar[str] = "library_revision"
     __table_args__ = (one_of("what", COUNTED), STRICT)
     what: str = Field(primary_key=True, sa_type=Words)
-    revision: int = 0
+    revision: int = Field(default=0, sa_type=Whole)
 
 
 class RankingCache(SQLModel, table=True):
@@ -52,8 +55,8 @@ class RankingCache(SQLModel, table=True):
     __tablename__: ClassVar[str] = "ranking_cache"
     __table_args__ = (STRICT,)
     question: str = Field(primary_key=True, sa_type=Words)
-    evidence_revision: int
+    evidence_revision: int = Field(sa_type=Whole)
     engine: str = Field(sa_type=Words)
-    n_uses: int
+    n_uses: int = Field(sa_type=Whole)
     made_at: datetime = Field(sa_type=Moment)
     document: dict[str, Any] = Field(default_factory=dict, sa_type=Document)

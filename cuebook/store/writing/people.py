@@ -4,17 +4,20 @@ from __future__ import annotations
 
 import secrets
 from collections.abc import Iterable
-from datetime import datetime
+from datetime import UTC, datetime
 from importlib import resources
 
+from sqlalchemy import Text, cast
 from sqlmodel import Session, col, delete, select
 
 from cuebook.errors import InputError, UnknownCodeError
 from cuebook.store.keys import make_key
-from cuebook.store.stamps import LOCAL_STAFF, Stamp
+from cuebook.store.stamps import LOCAL_STAFF, Stamp, make_stamp
 from cuebook.store.tables import people as tables
 from cuebook.store.tables.practice import Block, Participation
 from cuebook.store.tables.practice import Session as Meeting
+from cuebook.store.tables.upkeep import Draft, RankingCache
+from cuebook.store.writing.replay import is_known
 from cuebook.store.writing.revisions import count_evidence
 from cuebook.vocabulary import find_nearest
 
@@ -35,10 +38,14 @@ def make_code(tx: Session) -> str:
     return secrets.choice(free)
 
 
-def add_staff(tx: Session, code: str = LOCAL_STAFF, role: str = "") -> str:
+def add_staff(
+    tx: Session, code: str = LOCAL_STAFF, role: str = "", stamp: Stamp | None = None
+) -> str:
     """Add somebody who enters, if not there yet; return the code."""
     if tx.exec(select(tables.Staff).where(tables.Staff.code == code)).first() is None:
-        tx.add(tables.Staff(id=make_key(), code=code, role=role))
+        columns = (stamp or make_stamp()).as_columns()
+        tx.add(tables.Staff(id=make_key(), code=code, role=role, **columns))
+        tx.flush()
     return code
 
 
@@ -54,15 +61,18 @@ def add_learner(
     backgrounds: Iterable[str] = (),
     access_needs: Iterable[str] = (),
     is_demo: bool = False,
+    key: str | None = None,
 ) -> str:
-    """Add a learner under a code; return the key.
+    """Add a learner under a code; return the key. A key that is known already adds nothing.
 
     Raises
     ------
     InputError : the code is taken.
     """
+    if is_known(key, tx, tables.Learner):
+        return key
     _refuse_taken(tx, code)
-    key = make_key()
+    key = key or make_key()
     tx.add(
         tables.Learner(
             id=key,
@@ -76,11 +86,40 @@ def add_learner(
         )
     )
     tx.flush()
-    for background in dict.fromkeys(backgrounds):
-        tx.add(tables.LearnerBackground(learner_id=key, background=background))
-    for need in dict.fromkeys(access_needs):
-        tx.add(tables.LearnerNeed(learner_id=key, access_need=need))
+    set_backgrounds(tx, stamp, key, backgrounds)
+    set_access_needs(tx, stamp, key, access_needs)
     return key
+
+
+def set_backgrounds(tx: Session, stamp: Stamp, learner_id: str, backgrounds: Iterable[str]) -> None:
+    """Let a learner have exactly these backgrounds."""
+    wanted = set(backgrounds)
+    table = tables.LearnerBackground
+    rows = tx.exec(select(table).where(table.learner_id == learner_id)).all()
+    for row in rows:
+        if row.background not in wanted:
+            tx.delete(row)
+    for word in sorted(wanted - {row.background for row in rows}):
+        columns = stamp.as_columns()
+        tx.add(table(id=make_key(), learner_id=learner_id, background=word, **columns))
+    tx.flush()
+    count_evidence(tx)  # rankings can be asked for one background
+
+
+def set_access_needs(
+    tx: Session, stamp: Stamp, learner_id: str, access_needs: Iterable[str]
+) -> None:
+    """Let a learner have exactly these access needs."""
+    wanted = set(access_needs)
+    table = tables.LearnerNeed
+    rows = tx.exec(select(table).where(table.learner_id == learner_id)).all()
+    for row in rows:
+        if row.access_need not in wanted:
+            tx.delete(row)
+    for word in sorted(wanted - {row.access_need for row in rows}):
+        columns = stamp.as_columns()
+        tx.add(table(id=make_key(), learner_id=learner_id, access_need=word, **columns))
+    tx.flush()
 
 
 def _refuse_taken(tx: Session, code: str) -> None:
@@ -231,37 +270,64 @@ def add_group(tx: Session, stamp: Stamp, code: str, label: str = "") -> str:
     return key
 
 
-def add_member(tx: Session, group_id: str, learner_id: str, joined_at: datetime) -> None:
-    """Put a learner into a group, if not in it now."""
+def add_member(
+    tx: Session, group_id: str, learner_id: str, joined_at: datetime, stamp: Stamp | None = None
+) -> None:
+    """Put a learner into a group, if not in it then."""
     if learner_id not in {member.id for member in list_members(tx, group_id, joined_at)}:
         tx.add(
             tables.Membership(
-                id=make_key(), group_id=group_id, learner_id=learner_id, joined_at=joined_at
+                id=make_key(),
+                group_id=group_id,
+                learner_id=learner_id,
+                joined_at=joined_at,
+                **(stamp or make_stamp(joined_at)).as_columns(),
             )
         )
         tx.flush()
 
 
+def end_membership(tx: Session, group_id: str, learner_id: str, left_at: datetime) -> bool:
+    """Note that a learner has left a group; return whether they were in it."""
+    rows = tx.exec(
+        select(tables.Membership).where(
+            tables.Membership.group_id == group_id,
+            tables.Membership.learner_id == learner_id,
+            col(tables.Membership.left_at).is_(None),
+        )
+    ).all()
+    for row in rows:
+        row.left_at = left_at
+        row.revision += 1
+    tx.flush()
+    return bool(rows)
+
+
 def list_members(tx: Session, group_id: str, at: datetime | None = None) -> list[tables.Learner]:
-    """Return the learners of a group (at a time, if one is given) in the order of joining."""
+    """Return the learners who had not left a group by a time (now), in the order of joining.
+
+    When they joined is not asked: a class may be logged for a day before it was written down.
+    """
+    moment = at or datetime.now(UTC)
     query = (
         select(tables.Learner, tables.Membership)
         .join(tables.Membership, col(tables.Membership.learner_id) == tables.Learner.id)
         .where(tables.Membership.group_id == group_id)
         .order_by(col(tables.Membership.id))
     )
-    rows = tx.exec(query).all()
-    return [
-        learner
-        for learner, membership in rows
-        if at is None or membership.left_at is None or membership.left_at > at
-    ]
+    members = {
+        learner.id: learner
+        for learner, membership in tx.exec(query).all()
+        if membership.left_at is None or membership.left_at > moment
+    }
+    return list(members.values())
 
 
 def erase_learner(tx: Session, learner_id: str) -> list[str]:
     """Erase a learner with everything recorded; return the hashes of originals left unused."""
     from cuebook.store.writing.recordings import drop_unused_originals  # noqa: PLC0415
 
+    code = tx.get_one(tables.Learner, learner_id).code
     # Sessions and blocks of a group stay: only this learner's part of them goes.
     tx.exec(delete(Meeting).where(col(Meeting.learner_id) == learner_id))
     tx.exec(delete(Participation).where(col(Participation.learner_id) == learner_id))
@@ -269,5 +335,9 @@ def erase_learner(tx: Session, learner_id: str) -> list[str]:
     tx.flush()
     empty = select(Block.id).where(~col(Block.id).in_(select(Participation.block_id)))
     tx.exec(delete(Block).where(col(Block.id).in_(empty)))
+    # Stored rankings may list the learner's own values; drafts may name them.
+    tx.exec(delete(RankingCache))
+    naming = col(Draft.place).contains(code) | cast(col(Draft.content), Text).contains(code)
+    tx.exec(delete(Draft).where(naming))
     count_evidence(tx)
     return drop_unused_originals(tx)

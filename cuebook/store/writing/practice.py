@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-import hashlib
-import json
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import datetime
@@ -11,6 +9,7 @@ from datetime import datetime
 from sqlmodel import Session, col, func, select
 
 from cuebook.errors import UnknownCodeError
+from cuebook.store.canonical import make_digest
 from cuebook.store.keys import make_key
 from cuebook.store.stamps import Stamp
 from cuebook.store.tables import practice as tables
@@ -143,8 +142,7 @@ def add_block(tx: Session, stamp: Stamp, session_id: str, new: NewBlock) -> str:
 def _keep_protocol(tx: Session, stamp: Stamp, facts: Mapping[str, str]) -> str | None:
     if not facts:
         return None
-    canonical = json.dumps(dict(facts), sort_keys=True, separators=(",", ":"))
-    digest = hashlib.sha256(canonical.encode()).hexdigest()
+    digest = make_digest(facts)
     known = tx.exec(select(tables.Protocol.id).where(tables.Protocol.digest == digest)).first()
     if known is not None:
         return known
@@ -208,8 +206,20 @@ def add_use(tx: Session, stamp: Stamp, participation_id: str, learner_id: str, n
             words=new.words,
             stop_reason=new.stop_reason,
             stopped_at=stamp.occurred_at if new.stop_reason else None,
+            **stamp.as_columns(),
         )
     )
+    tx.flush()
+    count_evidence(tx)
+
+
+def keep_use(tx: Session, participation_id: str, learner_id: str) -> None:
+    """Note that a participation is a use, if that is not noted yet."""
+    if tx.get(tables.Use, participation_id) is not None:
+        return
+    part = tx.get_one(tables.Participation, participation_id)
+    stamp = Stamp(part.occurred_at, part.occurred_zone, part.entered_at, part.entered_by)
+    add_use(tx, stamp, participation_id, learner_id, NewUse())
 
 
 def add_happenings(
@@ -230,6 +240,9 @@ def add_happenings(
                 **stamp.as_columns(),
             )
         )
+    if events:
+        tx.flush()
+        count_evidence(tx)
 
 
 def add_trial(tx: Session, stamp: Stamp, participation_id: str, learner_id: str) -> str:
@@ -306,7 +319,9 @@ def add_schedule(
     made = []
     for place, cue in enumerate(slots):
         slot_id = make_key()
-        tx.add(tables.Slot(id=slot_id, schedule_id=key, place=place, cue=cue))
+        tx.add(
+            tables.Slot(id=slot_id, schedule_id=key, learner_id=learner_id, place=place, cue=cue)
+        )
         made.append(slot_id)
     tx.flush()
     return tuple(made)

@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-import json
 from collections.abc import Mapping
 from datetime import datetime
 from typing import TYPE_CHECKING, Any
 
+from cuebook.store.canonical import drop_not_numbers, make_canonical
 from cuebook.store.tables.upkeep import RankingCache
 
 if TYPE_CHECKING:
@@ -15,8 +15,7 @@ if TYPE_CHECKING:
 
 def make_question_key(question: Mapping[str, object]) -> str:
     """Return a question as canonical text: the key of its stored ranking."""
-    stated = {name: value for name, value in question.items() if value is not None}
-    return json.dumps(stated, sort_keys=True, separators=(",", ":"), ensure_ascii=False)
+    return make_canonical({name: value for name, value in question.items() if value is not None})
 
 
 def keep_ranking(
@@ -37,6 +36,6 @@ def keep_ranking(
             engine=engine,
             n_uses=n_uses,
             made_at=made_at,
-            document=dict(document),
+            document=drop_not_numbers(document),
         )
     )

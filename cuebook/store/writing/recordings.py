@@ -2,18 +2,18 @@
 
 from __future__ import annotations
 
-import hashlib
-import json
 from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any
 
 from sqlmodel import Session, col, delete, select
 
+from cuebook.store.canonical import make_digest
 from cuebook.store.keys import make_key
 from cuebook.store.stamps import Stamp
 from cuebook.store.tables import practice, recordings
 from cuebook.store.tables.people import Learner
+from cuebook.store.writing.revisions import count_evidence
 
 
 @dataclass(frozen=True, slots=True)
@@ -25,6 +25,8 @@ class EarlierReading:
     block_id: str
     session_id: str
     phase: str
+    task: str
+    is_current: bool
     person: str
     rule_digest: str
     recording_id: str
@@ -33,8 +35,7 @@ class EarlierReading:
 
 def make_rule_digest(rule: Mapping[str, Any]) -> str:
     """Return the hash of a reading rule."""
-    canonical = json.dumps(dict(rule), sort_keys=True, separators=(",", ":"))
-    return hashlib.sha256(canonical.encode()).hexdigest()
+    return make_digest(rule)
 
 
 def find_earlier_readings(tx: Session, sha256: str) -> list[EarlierReading]:
@@ -63,6 +64,8 @@ def find_earlier_readings(tx: Session, sha256: str) -> list[EarlierReading]:
             block_id=row.block_id,
             session_id=block.session_id,
             phase=block.phase,
+            task=block.task,
+            is_current=row.is_current,
             person=row.person,
             rule_digest=row.rule_digest,
             recording_id=row.id,
@@ -105,24 +108,39 @@ def add_recording(
     """
     if replaces is not None:
         tx.get_one(recordings.Recording, replaces).is_current = False
-    key = make_key()
-    tx.add(
-        recordings.Recording(
-            id=key,
-            original_id=original_id,
-            learner_id=learner_id,
-            block_id=block_id,
-            person=person,
-            rule=dict(rule),
-            rule_digest=make_rule_digest(rule),
-            rate_hz=rate_hz,
-            duration_s=duration_s,
-            **stamp.as_columns(),
+    digest = make_rule_digest(rule)
+    known = tx.exec(
+        select(recordings.Recording).where(
+            recordings.Recording.original_id == original_id,
+            recordings.Recording.learner_id == learner_id,
+            recordings.Recording.block_id == block_id,
+            recordings.Recording.person == person,
+            recordings.Recording.rule_digest == digest,
         )
-    )
+    ).first()
+    if known is not None:
+        known.is_current = True  # back to a rule that was used before
+        key = known.id
+    else:
+        key = make_key()
+        tx.add(
+            recordings.Recording(
+                id=key,
+                original_id=original_id,
+                learner_id=learner_id,
+                block_id=block_id,
+                person=person,
+                rule=dict(rule),
+                rule_digest=digest,
+                rate_hz=rate_hz,
+                duration_s=duration_s,
+                **stamp.as_columns(),
+            )
+        )
     tx.flush()
-    tx.add(recordings.TrialRecording(trial_id=trial_id, recording_id=key))
+    tx.merge(recordings.TrialRecording(trial_id=trial_id, recording_id=key, learner_id=learner_id))
     tx.flush()
+    count_evidence(tx)
     return key
 
 

@@ -11,6 +11,11 @@ if TYPE_CHECKING:
 
 
 def _count(tx: Session, what: str) -> None:
+    """Raise a counter once in a transaction, however much of it concerns the counter."""
+    counted: set[str] = tx.info.setdefault("counted", set())
+    if what in counted:
+        return
+    counted.add(what)
     row = tx.get(LibraryRevision, what)
     if row is None:
         tx.add(LibraryRevision(what=what, revision=1))
