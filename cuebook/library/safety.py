@@ -90,10 +90,10 @@ def _find_action(danger: _Danger, tokens: Sequence[Token], guard: _Guard) -> str
     actions = []
     excused: dict[int, bool] = {}
     for sign in danger.signs:
-        clauses = _find_sign(sign, danger, tokens, guard, excused)
-        if clauses:
-            spoken = [[t for t in tokens if t.clause == clause] for clause in clauses]
-            is_past = all(_occurs(guard.history, clause) for clause in spoken)
+        parts = _find_sign(sign, danger, tokens, guard, excused)
+        if parts:
+            spoken = [[token for token in tokens if token.part == part] for part in parts]
+            is_past = all(_occurs(guard.history, part) for part in spoken)
             actions.append(danger.past_action if is_past else danger.action)
     order = load_vocabulary().slugs("safety_action")
     return min(actions, key=order.index, default=None)
@@ -106,26 +106,36 @@ def _find_sign(
     guard: _Guard,
     excused: dict[int, bool],
 ) -> set[int]:
-    """Return the clauses in which the phrases of a sign count; none unless all of them do.
+    """Return the parts in which the phrases of a sign count; none unless all of them do.
 
     A phrase counts where it is neither denied nor said in a part that takes the danger back; a
     later part may say it after all.
     """
-    clauses: set[int] = set()
+    parts: set[int] = set()
     for phrase in sign:
         for places in find_every(phrase, tokens):
+            first = tokens[places[0]]
             if _is_denied(places, tokens, guard):
                 continue
-            part = tokens[places[0]].part
-            if part not in excused:
-                mine = [token for token in tokens if token.part == part]
-                excused[part] = _occurs(danger.unless, mine)
-            if not excused[part]:
-                clauses.add(tokens[places[0]].clause)
+            if first.part not in excused:
+                excused[first.part] = _is_excused(danger, first, tokens)
+            if not excused[first.part]:
+                parts.add(first.part)
                 break
         else:
             return set()
-    return clauses
+    return parts
+
+
+def _is_excused(danger: _Danger, first: Token, tokens: Sequence[Token]) -> bool:
+    """Return whether the words around a sign take the danger back.
+
+    For a caution the whole clause is read; a stop must not be lost to words further off, so there
+    only the part with the sign is.
+    """
+    if danger.action == CAUTION_FIRST:
+        return _occurs(danger.unless, [t for t in tokens if t.clause == first.clause])
+    return _occurs(danger.unless, [t for t in tokens if t.part == first.part])
 
 
 def _is_denied(places: Sequence[int], tokens: Sequence[Token], guard: _Guard) -> bool:

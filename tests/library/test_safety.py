@@ -104,6 +104,8 @@ def test_long_ago_is_a_caution_and_not_an_emergency() -> None:
     """What happened years ago asks for care, not for an ambulance."""
     assert get_action("Had a heart attack five years ago") == CAUTION_FIRST
     assert get_action("Had a heart attack five minutes ago") == "stop_emergency"
+    both = "Had a heart attack five years ago and his chest hurts"
+    assert get_action(both) == "stop_emergency"
 
 
 def test_a_caution_has_words_and_a_stop_has_none_of_the_text() -> None:
