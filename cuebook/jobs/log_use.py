@@ -103,7 +103,9 @@ def _log(location: Location, entry: BlockEntry, blocks: tuple[BlockEntry, ...]) 
     with open_library(location) as library, library.transaction() as tx:
         keep_seed_cues(tx, stamp)
         target = _find_target(tx, entry)
-        session_id, is_new = _find_session(tx, stamp, entry, target)
+        session_id, is_new = find_session(
+            tx, stamp, entry, learner_id=target.learner_id, group_id=target.group_id
+        )
         cautions = warn_of_holds(tx, [key for key, _ in target.learners], entry.task)
         for place, (block, phase) in enumerate(zip(blocks, phases, strict=True)):
             # Blocks of one call follow one another in time; an order by key alone would do for
@@ -148,15 +150,20 @@ def _find_target(tx: Transaction, entry: BlockEntry) -> _Target:
     return _Target(None, group.id, members)
 
 
-def _find_session(
-    tx: Transaction, stamp: Stamp, entry: BlockEntry, target: _Target
+def find_session(
+    tx: Transaction,
+    stamp: Stamp,
+    entry: BlockEntry,
+    *,
+    learner_id: str | None = None,
+    group_id: str | None = None,
 ) -> tuple[str, bool]:
     """Return the session to log in, and whether it is new."""
     from cuebook.store.writing import practice  # noqa: PLC0415
 
     if entry.session not in {None, "new"}:
         found = practice.get_session(tx, entry.session or "")
-        if (found.learner_id, found.group_id) != (target.learner_id, target.group_id):
+        if (found.learner_id, found.group_id) != (learner_id, group_id):
             raise UsageError(
                 f"The session {entry.session} belongs to somebody else.",
                 "Leave --session out to go on with today's.",
@@ -168,12 +175,12 @@ def _find_session(
             tx,
             local_day,
             local_day + timedelta(days=1),
-            learner_id=target.learner_id,
-            group_id=target.group_id,
+            learner_id=learner_id,
+            group_id=group_id,
         )
         if known is not None:
             return known, False
-    made = practice.start_session(tx, stamp, learner_id=target.learner_id, group_id=target.group_id)
+    made = practice.start_session(tx, stamp, learner_id=learner_id, group_id=group_id)
     return made, True
 
 

@@ -261,11 +261,19 @@ def _finish(
         cue = cues.get(line["cue"])
         line["first_words"] = cue.wording().text if cue is not None else ""
         line["caution"] = cue.caution if cue is not None else ""
+        line["words"] = _name_metrics(line["words"], [entry.metric, *entry.watch_partners])
     own = _keep_task(derived, request.task)
     document["recorded"] = list_recorded(own, log, entry, request.contrast, document["cues"])
     document["withheld"] = [*document["refused"], *_list_left_out(derived)]
     document["opening"] = describe_opening(document)
     return document
+
+
+def _name_metrics(words: str, metrics: Sequence[str]) -> str:
+    """Return a verdict's words with the metrics' names in place of their ids."""
+    for metric in sorted(metrics, key=len, reverse=True):
+        words = words.replace(metric, load_registry().get(metric).name.lower())
+    return words
 
 
 def name_contrast(contrast: str) -> str:

@@ -6,6 +6,8 @@ from collections.abc import Mapping, Sequence
 from typing import Any
 
 _SETTLED = frozenset({"helps", "seems_worse", "no_worthwhile_difference"})
+_HARMFUL = frozenset({"stop_and_look", "seems_worse", "may_be_worse"})
+"""Verdicts after which more of the same is never advised."""
 
 
 def describe_opening(document: Mapping[str, Any]) -> list[str]:
@@ -36,9 +38,7 @@ def _say_today(cues: Sequence[Mapping[str, Any]]) -> str:
 
 def _say_harm(cues: Sequence[Mapping[str, Any]]) -> list[str]:
     return [
-        f"Take care: {cue['cue']}: {cue['words']}."
-        for cue in cues
-        if cue["verdict"] in {"stop_and_look", "seems_worse", "may_be_worse"}
+        f"Take care: {cue['cue']}: {cue['words']}." for cue in cues if cue["verdict"] in _HARMFUL
     ]
 
 
@@ -46,7 +46,9 @@ def _say_next(document: Mapping[str, Any]) -> list[str]:
     cues = document["cues"]
     if document.get("reference") != "practice_alone":
         return ["Next: add blocks without a cue; they are the line that cues are compared with."]
-    open_cues = [cue for cue in cues if cue.get("more_uses") and cue["verdict"] not in _SETTLED]
+    open_cues = [
+        cue for cue in cues if cue.get("more_uses") and cue["verdict"] not in _SETTLED | _HARMFUL
+    ]
     if not open_cues:
         return []
     nearest = min(open_cues, key=lambda cue: cue["more_uses"])

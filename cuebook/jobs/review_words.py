@@ -3,9 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
+from shutil import get_terminal_size
 from typing import Any
 
 WORDS_WIDTH = 26
+TABLE_WIDTH = 140
+"""Terminals at least this wide get one row a cue."""
 
 
 def describe_review(document: Mapping[str, Any]) -> list[str]:
@@ -13,9 +16,9 @@ def describe_review(document: Mapping[str, Any]) -> list[str]:
     lines = [_describe_question(document), *_describe_opening(document), ""]
     lines += [_describe_practice_alone(document), _describe_worthwhile(document), ""]
     if document["cues"]:
-        lines += [_TABLE_HEAD, *(_describe_cue(cue, document) for cue in document["cues"])]
-        lines += ["", "Effect and 95 %: difference from the line to beat; plus is better."]
-        lines += list(_describe_marks(document["cues"]))
+        is_wide = get_terminal_size().columns >= TABLE_WIDTH
+        lines += (_describe_table if is_wide else _describe_blocks)(document["cues"])
+        lines += ["", _describe_scale(document), *_describe_marks(document["cues"])]
     lines += list(_describe_recorded(document.get("recorded") or ()))
     lines += list(_describe_rest(document))
     return lines
@@ -60,30 +63,106 @@ def _describe_worthwhile(document: Mapping[str, Any]) -> str:
     return f"Worthwhile: {format_number(worthwhile, signed=False)}{unit} {note}".rstrip() + "."
 
 
+def _describe_scale(document: Mapping[str, Any]) -> str:
+    line = "the change with practice alone"
+    if document.get("reference") != "practice_alone":
+        line = "the mean of the cues"
+    unit = document.get("unit") or ""
+    scale = "on the log scale" if document.get("transform") == "log" else unit
+    return f"Numbers: difference from {line}{f', {scale}' if scale else ''}; plus is better."
+
+
+def _describe_table(cues: Sequence[Mapping[str, Any]]) -> Iterator[str]:
+    """Yield one row a cue; the columns are as wide as their contents."""
+    rows = [_TABLE_HEAD, *(_list_cells(cue) for cue in cues)]
+    widths = [max(len(row[at]) for row in rows) for at in range(len(_TABLE_HEAD))]
+    for row in rows:
+        cells = [
+            cell.rjust(width) if at in _NUMBERS else cell.ljust(width)
+            for at, (cell, width) in enumerate(zip(row, widths, strict=True))
+        ]
+        yield "  ".join(cells).rstrip()
+
+
 _TABLE_HEAD = (
-    f"{'':<4}{'cue':<24}{'first words':<{WORDS_WIDTH + 1}}{'effect':>8}  "
-    f"{'95 %':<18}{'chance':>6}  {'uses/learners':<14}{'chosen by':<14}verdict"
+    "",
+    "cue",
+    "first words",
+    "effect",
+    "95 %",
+    "chance",
+    "said to",
+    "chosen by",
+    "verdict",
 )
+_NUMBERS = frozenset({3, 5})
 
 
-def _describe_cue(cue: Mapping[str, Any], document: Mapping[str, Any]) -> str:
-    del document
+def _list_cells(cue: Mapping[str, Any]) -> tuple[str, ...]:
     words = str(cue.get("first_words") or "")
     if len(words) > WORDS_WIDTH:
         words = words[: WORDS_WIDTH - 1].rstrip() + "…"
-    interval = f"{format_number(cue['low95'])} to {format_number(cue['high95'])}"
-    chance = "–" if cue["p_better"] is None else f"{cue['p_better']:.0%}".replace("%", " %")
-    counts = f"{cue['uses']}/{cue['learners']}"
     return (
-        f"{cue.get('sign') or '?':<4}{cue['cue']:<24}{words:<{WORDS_WIDTH + 1}}"
-        f"{format_number(cue['effect']):>8}  {interval:<18}{chance:>6}  {counts:<14}"
-        f"{cue.get('grade_words') or '':<14}{cue.get('words') or cue['verdict']}"
+        str(cue.get("sign") or "?"),
+        str(cue["cue"]),
+        words,
+        format_number(cue["effect"]),
+        format_interval(cue),
+        format_chance(cue["p_better"]),
+        f"{cue['uses']}/{cue['learners']}",
+        str(cue.get("grade_words") or ""),
+        str(cue.get("words") or cue["verdict"]),
     )
 
 
-def _describe_marks(cues: Sequence[Mapping[str, Any]]) -> Iterator[str]:
+def format_interval(cue: Mapping[str, Any]) -> str:
+    """Return the 95 % interval in words."""
+    return f"{format_number(cue['low95'])} to {format_number(cue['high95'])}"
+
+
+def format_chance(chance: float | None) -> str:
+    """Return a probability in per cent; never 0 or 100, which nobody can know."""
+    if chance is None:
+        return "–"
+    if chance > 0.995:
+        return ">99 %"
+    return "<1 %" if chance < 0.005 else f"{100 * chance:.0f} %"
+
+
+def _describe_blocks(cues: Sequence[Mapping[str, Any]]) -> Iterator[str]:
+    """Yield each cue on lines that fit a narrow terminal."""
     for cue in cues:
-        marks = [str(mark) for mark in cue.get("marks") or ()]
+        yield f"{cue.get('sign') or '?':<4}{cue['cue']}: {cue.get('words') or cue['verdict']}"
+        if cue.get("first_words"):
+            yield f"      {cue['first_words']}"
+        people = "learner" if cue["learners"] == 1 else "learners"
+        yield (
+            f"      {format_number(cue['effect'])} ({format_interval(cue)}), "
+            f"chance {format_chance(cue['p_better'])}"
+        )
+        yield (
+            f"      said {cue['uses']} times to {cue['learners']} {people}, "
+            f"chosen by: {cue.get('grade_words') or 'not known'}"
+        )
+
+
+_MARKS = {
+    "one_learner_only": "one learner only",
+    "rank_not_known": "rank not known",
+    "no_clear_best": "no clear best",
+    "in_tie_band": "may be as good as the first",
+}
+
+
+def _describe_marks(cues: Sequence[Mapping[str, Any]]) -> Iterator[str]:
+    tied = [cue["cue"] for cue in cues if "in_tie_band" in (cue.get("marks") or ())]
+    for cue in cues:
+        marks = [
+            _MARKS.get(str(mark), str(mark))
+            for mark in cue.get("marks") or ()
+            if mark != "in_tie_band" or len(tied) > 1
+        ]
+        marks += [f"missing: {what}" for what in cue.get("missing") or ()]
         if marks:
             yield f"  {cue['cue']}: " + "; ".join(marks)
 

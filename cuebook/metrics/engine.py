@@ -12,6 +12,7 @@ from cuebook.errors import UsageError
 from cuebook.metrics import families
 from cuebook.metrics.registry import MetricEntry, Registry, load_registry
 from cuebook.metrics.settings import merge_settings, read_settings
+from cuebook.metrics.signals import CleanTrack, Movement
 from cuebook.metrics.values import Measurement, MetricValue, give_none
 from cuebook.recordings.recording import POSITION, PRESSURE_CENTRE, Recording
 from cuebook.vocabulary import load_vocabulary
@@ -73,10 +74,11 @@ def measure_recording(
     given = read_settings(settings or {})
     family, is_assumed = _choose_family(recording, task)
     wanted = _choose_metrics(registry, metrics, family, recording, around or Around())
-    measured = []
-    for metric in wanted:
-        entry = registry.get(metric)
-        measured.append(_measure_one(recording, entry, given, around or Around()))
+    movements: dict[tuple[object, ...], Movement | CleanTrack | None] = {}
+    measured = [
+        _measure_one(recording, registry.get(metric), given, around or Around(), movements)
+        for metric in wanted
+    ]
     if is_assumed:
         measured = [_flag(measurement, "task_assumed") for measurement in measured]
     return tuple(measured)
@@ -151,10 +153,20 @@ _COMPUTE: dict[str, Callable[[families.Case], MetricValue]] = {
 
 
 def _measure_one(
-    recording: Recording, entry: MetricEntry, given: Mapping[str, str], around: Around
+    recording: Recording,
+    entry: MetricEntry,
+    given: Mapping[str, str],
+    around: Around,
+    movements: dict[tuple[object, ...], Movement | CleanTrack | None],
 ) -> Measurement:
     settings = merge_settings(entry, given)
-    case = families.Case(recording, settings, around.points, _find_beats(recording, around))
+    case = families.Case(
+        recording,
+        settings,
+        around.points,
+        _find_beats(recording, around),
+        movements=movements,
+    )
     answer = _COMPUTE[entry.metric](case)
     if answer.reason is None and not math.isfinite(answer.value):
         answer = give_none("the value is not a finite number", *answer.flags)

@@ -20,6 +20,7 @@ from cuebook.metrics.values import MetricValue, give_none
 from cuebook.recordings.recording import Recording
 
 UNIT_UNKNOWN = "unit_unknown"
+_SHARED_SETTINGS = ("lowpass_hz", "onset", "max_gap_s", "resample")
 _EVENT_ORDER = ("tap", "onset", "step")
 
 
@@ -32,10 +33,15 @@ class Case:
     points: Mapping[str, tuple[float, ...]]
     beats_s: tuple[float, ...]
     quality: dict[str, object] = field(default_factory=dict)
+    movements: dict[tuple[object, ...], Movement | CleanTrack | None] = field(default_factory=dict)
+    """Movements found already under the same settings; shared by the metrics of a recording."""
 
     def find_movement(self) -> Movement | str:
         """Return the movement, or the reason why there is none."""
-        found = find_movement(self.recording, self.settings)
+        key = tuple(self.settings.get(name) for name in _SHARED_SETTINGS)
+        if key not in self.movements:
+            self.movements[key] = find_movement(self.recording, self.settings)
+        found = self.movements[key]
         if found is None:
             return "no position or speed was recorded"
         track = found.track if isinstance(found, Movement) else found
