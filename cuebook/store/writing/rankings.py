@@ -6,16 +6,12 @@ from collections.abc import Mapping
 from datetime import datetime
 from typing import TYPE_CHECKING, Any
 
-from cuebook.store.canonical import drop_not_numbers, make_canonical
+from cuebook.store.canonical import drop_not_numbers
+from cuebook.store.question_keys import make_question_key
 from cuebook.store.tables.upkeep import RankingCache
 
 if TYPE_CHECKING:
     from sqlmodel import Session
-
-
-def make_question_key(question: Mapping[str, object]) -> str:
-    """Return a question as canonical text: the key of its stored ranking."""
-    return make_canonical({name: value for name, value in question.items() if value is not None})
 
 
 def keep_ranking(
