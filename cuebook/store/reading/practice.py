@@ -7,9 +7,9 @@ import sqlite3
 from collections import defaultdict
 from collections.abc import Iterable
 from datetime import datetime, timedelta
-from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
 
 from cuebook.practice.log import (
+    ACQUISITION,
     AttemptValue,
     LoggedBlock,
     LoggedLearner,
@@ -19,6 +19,7 @@ from cuebook.practice.log import (
 )
 from cuebook.store.moments import parse_moment
 from cuebook.store.reading.people import read_rankable
+from cuebook.store.zones import find_zone
 
 LATE = timedelta(hours=24)
 KEY_FACTS = (
@@ -35,10 +36,10 @@ ORDER BY session.occurred_at, session.id
 """
 _BLOCKS = """
 SELECT block.id, block.session_id, block.number, block.phase, block.task, block.side,
-       block.tempo, block.others, block.chosen, block.delivery, block.event_id,
+       block.tempo, block.others, block.chosen, block.delivered_by, block.event_id,
        block.cue_entered_at, protocol.facts, cue.code AS cue, cue.kind AS kind,
        wording.revision AS wording, slot.id AS slot_id, slot.cue AS assigned,
-       schedule.occurred_at AS drawn_at, block.occurred_at
+       MAX(schedule.occurred_at, schedule.entered_at) AS drawn_at, block.occurred_at
 FROM block
 LEFT JOIN protocol ON protocol.id = block.protocol_id
 LEFT JOIN wording ON wording.id = block.wording_id
@@ -70,6 +71,21 @@ ORDER BY trial.participation_id, trial.number, measurement.recording_id
 """
 
 
+_MEASURED_PARTS = """
+SELECT block.id, block.phase, block.task, block.cue_entered_at, participation.learner_id,
+       (SELECT MIN(trial.entered_at) FROM trial
+        WHERE trial.participation_id = participation.id) AS entered_at
+FROM participation
+JOIN block ON block.id = participation.block_id
+JOIN session ON session.id = block.session_id
+ORDER BY session.occurred_at DESC, session.id DESC, block.number DESC
+"""
+_CORRECTED = """
+SELECT row_key, field, MAX(entered_at) AS entered_at FROM correction
+WHERE table_name = 'measurement' GROUP BY row_key, field
+"""
+
+
 def read_practice_log(connection: sqlite3.Connection, metrics: Iterable[str]) -> PracticeLog:
     """Return the whole log with the attempt values of some metrics."""
     values = _read_values(connection, tuple(metrics))
@@ -91,22 +107,63 @@ def read_practice_log(connection: sqlite3.Connection, metrics: Iterable[str]) ->
                 stop_reason=row["stop_reason"],
             )
         )
-    blocks: dict[str, list[LoggedBlock]] = defaultdict(list)
-    groups = {row["id"]: row["group_code"] for row in connection.execute(_SESSIONS).fetchall()}
+    meetings = connection.execute(_SESSIONS).fetchall()
+    rows: dict[str, list[sqlite3.Row]] = defaultdict(list)
     for row in connection.execute(_BLOCKS):
-        group = groups.get(row["session_id"])
-        blocks[row["session_id"]].append(_make_block(row, tuple(parts[row["id"]]), group))
-    sessions = tuple(
-        LoggedSession(
-            session=row["id"],
-            started_at=_localise(row["occurred_at"], row["occurred_zone"]),
-            blocks=tuple(blocks[row["id"]]),
-            is_date_only=bool(row["is_date_only"]),
-            do_not_use=bool(row["do_not_use"]),
+        rows[row["session_id"]].append(row)
+    altered = _find_altered_after_result(connection)
+    sessions = []
+    for meeting in meetings:
+        in_gap = _find_gap_starts(rows[meeting["id"]])
+        sessions.append(
+            LoggedSession(
+                session=meeting["id"],
+                started_at=_localise(meeting["occurred_at"], meeting["occurred_zone"]),
+                blocks=tuple(
+                    _make_block(
+                        row,
+                        tuple(parts[row["id"]]),
+                        meeting["group_code"],
+                        gap_start=in_gap[row["id"]],
+                        is_changed_after_result=row["id"] in altered,
+                    )
+                    for row in rows[meeting["id"]]
+                ),
+                is_date_only=bool(meeting["is_date_only"]),
+                do_not_use=bool(meeting["do_not_use"]),
+            )
         )
-        for row in connection.execute(_SESSIONS)
-    )
-    return PracticeLog(_read_learners(connection), sessions)
+    return PracticeLog(_read_learners(connection), tuple(sessions))
+
+
+def _find_gap_starts(blocks: Iterable[sqlite3.Row]) -> dict[str, str]:
+    """Return for each block when the gap before it began: the first block after practice.
+
+    An order drawn after that may have been drawn with the before-measure already known.
+    """
+    starts: dict[str, str] = {}
+    open_since: dict[str, str] = {}
+    for row in blocks:
+        since = open_since.setdefault(row["task"], row["occurred_at"])
+        starts[row["id"]] = min(since, row["occurred_at"])
+        if row["phase"] == ACQUISITION:
+            del open_since[row["task"]]
+    return starts
+
+
+def _find_altered_after_result(connection: sqlite3.Connection) -> frozenset[str]:
+    """Return the practice blocks whose cue was entered after what followed was measured."""
+    found = set()
+    next_measured: dict[tuple[str, str], str] = {}
+    for row in connection.execute(_MEASURED_PARTS):
+        place = (row["learner_id"], row["task"])
+        if row["phase"] == ACQUISITION:
+            known = [row["entered_at"], next_measured.get(place)]
+            if any(moment is not None and moment < row["cue_entered_at"] for moment in known):
+                found.add(row["id"])
+        elif row["entered_at"] is not None:
+            next_measured[place] = row["entered_at"]
+    return frozenset(found)
 
 
 def _read_values(
@@ -118,9 +175,13 @@ def _read_values(
     stopped = {
         row["id"]: row["stopped_at"] for row in connection.execute(_PARTS) if row["stopped_at"]
     }
+    corrected = {
+        (row["row_key"], row["field"]): row["entered_at"] for row in connection.execute(_CORRECTED)
+    }
     query = _VALUES.format(marks=", ".join("?" * len(metrics)))
     for row in connection.execute(query, metrics):
-        occurred, entered = parse_moment(row["occurred_at"]), parse_moment(row["entered_at"])
+        typed_at = corrected.get((row["trial_id"], row["metric"]), row["entered_at"])
+        occurred, entered = parse_moment(row["occurred_at"]), parse_moment(typed_at)
         stopped_at = stopped.get(row["participation_id"])
         found[row["participation_id"]][row["metric"]].append(
             AttemptValue(
@@ -136,7 +197,12 @@ def _read_values(
 
 
 def _make_block(
-    row: sqlite3.Row, parts: tuple[LoggedParticipation, ...], group: str | None
+    row: sqlite3.Row,
+    parts: tuple[LoggedParticipation, ...],
+    group: str | None,
+    *,
+    gap_start: str,
+    is_changed_after_result: bool,
 ) -> LoggedBlock:
     facts = json.loads(row["facts"]) if row["facts"] else {}
     conditions = [(name, str(facts[name])) for name in KEY_FACTS if name in facts]
@@ -145,7 +211,7 @@ def _make_block(
     event = row["event_id"]
     if event is not None and group is not None:
         event = f"{group}:{event}"
-    is_randomised = row["slot_id"] is not None and row["drawn_at"] <= row["occurred_at"]
+    is_randomised = row["slot_id"] is not None and row["drawn_at"] <= gap_start
     return LoggedBlock(
         block=row["id"],
         number=row["number"],
@@ -162,7 +228,8 @@ def _make_block(
         assigned=row["assigned"],
         is_randomised=is_randomised,
         event=event,
-        delivery=row["delivery"],
+        delivery=row["delivered_by"],
+        is_changed_after_result=is_changed_after_result,
     )
 
 
@@ -186,8 +253,4 @@ def _read_learners(connection: sqlite3.Connection) -> dict[str, LoggedLearner]:
 
 def _localise(moment: str, zone: str) -> datetime:
     """Return a moment in the zone it was entered in, so that calendar days are local ones."""
-    at = parse_moment(moment)
-    try:
-        return at.astimezone(ZoneInfo(zone))
-    except (ZoneInfoNotFoundError, ValueError, OSError):
-        return at
+    return parse_moment(moment).astimezone(find_zone(zone))

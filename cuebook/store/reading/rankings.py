@@ -68,7 +68,9 @@ def read_measured_questions(connection: sqlite3.Connection) -> tuple[MeasuredQue
         JOIN trial ON trial.id = measurement.trial_id
         JOIN participation ON participation.id = trial.participation_id
         JOIN block ON block.id = participation.block_id
-        WHERE measurement.value IS NOT NULL
+        LEFT JOIN recording ON recording.id = measurement.recording_id
+        WHERE measurement.value IS NOT NULL AND trial.is_valid = 1
+          AND (measurement.recording_id = '' OR recording.is_current = 1)
         GROUP BY measurement.metric, block.task
         ORDER BY n_values DESC, measurement.metric, block.task
         """

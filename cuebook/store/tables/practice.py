@@ -11,6 +11,7 @@ from cuebook.store.tables.base import STRICT, Entered, Stamped, flag, one_of
 from cuebook.store.words import (
     CHOSEN,
     CYCLES,
+    DELIVERERS,
     DELIVERIES,
     EVENTS,
     OBSERVED,
@@ -65,6 +66,7 @@ class Block(Entered, table=True):
         one_of("chosen", CHOSEN),
         one_of("cycle", CYCLES),
         one_of("delivery", DELIVERIES),
+        one_of("delivered_by", DELIVERERS),
         CheckConstraint("wording_id IS NULL OR phase = 'acquisition'", name="cue_in_practice"),
         CheckConstraint("number >= 1", name="number"),
         STRICT,
@@ -81,6 +83,7 @@ class Block(Entered, table=True):
     others: str = Field(default="none", sa_type=Words)
     chosen: str | None = Field(default=None, sa_type=Words)
     delivery: str | None = Field(default=None, sa_type=Words)
+    delivered_by: str | None = Field(default=None, sa_type=Words)
     event_id: str | None = Field(default=None, sa_type=Key)
     slot_id: str | None = Field(
         default=None, sa_type=Key, foreign_key="slot.id", ondelete="SET NULL", index=True

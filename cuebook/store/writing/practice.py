@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
-from datetime import datetime
+from datetime import datetime, timedelta
 
 from sqlmodel import Session, col, func, select
 
@@ -33,6 +33,10 @@ class NewBlock:
     tempo: float | None = None
     cycle: str | None = None
     protocol: Mapping[str, str] = field(default_factory=dict)
+    delivery: str | None = None
+    """Spoken, shown …; None: not noted."""
+    delivered_by: str | None = None
+    """teacher or assistant; None: not noted."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -109,16 +113,16 @@ def find_open_session(
 
 
 def add_block(tx: Session, stamp: Stamp, session_id: str, new: NewBlock) -> str:
-    """Add a block at the end of a session; return its key."""
-    last = tx.exec(
-        select(func.max(tables.Block.number)).where(tables.Block.session_id == session_id)
-    ).one()
+    """Add a block to a session at its place in time; return its key.
+
+    Blocks of the same minute keep the order in which they were entered.
+    """
     key = make_key()
     tx.add(
         tables.Block(
             id=key,
             session_id=session_id,
-            number=(last or 0) + 1,
+            number=_make_room(tx, session_id, stamp.occurred_at),
             phase=new.phase,
             task=new.task,
             side=new.side,
@@ -130,6 +134,8 @@ def add_block(tx: Session, stamp: Stamp, session_id: str, new: NewBlock) -> str:
             chosen=new.chosen,
             event_id=new.event_id,
             slot_id=new.slot_id,
+            delivery=new.delivery,
+            delivered_by=new.delivered_by,
             cue_entered_at=stamp.entered_at,
             **stamp.as_columns(),
         )
@@ -137,6 +143,24 @@ def add_block(tx: Session, stamp: Stamp, session_id: str, new: NewBlock) -> str:
     tx.flush()
     count_evidence(tx)
     return key
+
+
+def _make_room(tx: Session, session_id: str, occurred_at: datetime) -> int:
+    """Return the number of a block that happened then; later ones move back by one."""
+    next_minute = occurred_at.replace(second=0, microsecond=0) + timedelta(minutes=1)
+    rows = tx.exec(
+        select(tables.Block)
+        .where(tables.Block.session_id == session_id)
+        .order_by(col(tables.Block.number).desc())
+    ).all()
+    number = (rows[0].number if rows else 0) + 1
+    for row in rows:
+        if row.occurred_at < next_minute:
+            break
+        number = row.number
+        row.number += 1
+        tx.flush()  # one at a time from the back: no two blocks share a number
+    return number
 
 
 def _keep_protocol(tx: Session, stamp: Stamp, facts: Mapping[str, str]) -> str | None:

@@ -626,6 +626,7 @@ def upgrade() -> None:
         sa.Column("others", column_types.Words(), nullable=False),
         sa.Column("chosen", column_types.Words(), nullable=True),
         sa.Column("delivery", column_types.Words(), nullable=True),
+        sa.Column("delivered_by", column_types.Words(), nullable=True),
         sa.Column("event_id", column_types.Key(), nullable=True),
         sa.Column("slot_id", column_types.Key(), nullable=True),
         sa.Column("cue_entered_at", column_types.Moment(), nullable=False),
@@ -636,6 +637,9 @@ def upgrade() -> None:
         sa.CheckConstraint(
             "cycle IN ('step', 'stride', 'stroke', 'beat', 'count_of_eight', 'breath', 'repetition', 'turn')",
             name=op.f("ck_block_cycle"),
+        ),
+        sa.CheckConstraint(
+            "delivered_by IN ('teacher', 'assistant')", name=op.f("ck_block_delivered_by")
         ),
         sa.CheckConstraint(
             "delivery IN ('spoken', 'written', 'sung_counted', 'signed', 'shown', 'touched', 'video', 'sound')",
