@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Callable
 from datetime import UTC, datetime
 from typing import Any, TypeVar
@@ -13,6 +12,17 @@ from cuebook.errors import UsageError
 
 Command = TypeVar("Command", bound=Callable[..., Any])
 
+
+def _take_library(
+    context: click.Context, _option: click.Parameter, value: str | None
+) -> str | None:
+    """Return the library named after the command, else the one named before it."""
+    if value is not None:
+        return value
+    named: str | None = context.find_root().params.get("location")
+    return named
+
+
 json_option = click.option("--json", "as_json", is_flag=True, help="Print one JSON document.")
 library_option = click.option(
     "--library",
@@ -20,44 +30,13 @@ library_option = click.option(
     envvar="CUEBOOK_LIBRARY",
     metavar="PATH|URL",
     help="Folder of the library (or the variable CUEBOOK_LIBRARY).",
+    callback=_take_library,
 )
 
 
 def with_common_options(command: Command) -> Command:
     """Give a command --json and --library."""
     return library_option(json_option(command))
-
-
-def parse_values(texts: tuple[str, ...], option: str) -> dict[str, tuple[float, ...]]:
-    """Read ``METRIC=NUMBER[,NUMBER…]`` texts into numbers per metric, in the order typed.
-
-    Raises
-    ------
-    UsageError : no ``=``, no number, or something that is not a finite number.
-    """
-    values: dict[str, tuple[float, ...]] = {}
-    for text in texts:
-        metric, separator, numbers = text.partition("=")
-        if not separator or not metric.strip():
-            raise UsageError(
-                f"{option} reads '{text}'.", f"Write METRIC=NUMBER, such as {option} sparc=-1.6."
-            )
-        typed = tuple(_parse_number(number, text, option) for number in numbers.split(","))
-        values[metric.strip()] = values.get(metric.strip(), ()) + typed
-    return values
-
-
-def _parse_number(number: str, text: str, option: str) -> float:
-    try:
-        value = float(number)
-    except ValueError:
-        value = math.nan
-    if not math.isfinite(value):
-        raise UsageError(
-            f"{option} {text}: '{number.strip()}' is not a number.",
-            "Separate several numbers by commas and write a decimal point, such as 1.6,1.7.",
-        )
-    return value
 
 
 def parse_moment(text: str | None) -> datetime | None:

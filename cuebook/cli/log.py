@@ -6,11 +6,12 @@ from typing import Any
 
 import click
 
-from cuebook.cli.common_options import parse_moment, parse_values, with_common_options
+from cuebook.cli.common_options import parse_moment, with_common_options
 from cuebook.cli.output import print_json, to_plain
 from cuebook.errors import UsageError
 from cuebook.jobs.log_entries import BlockEntry, LearnerNote, Logged
 from cuebook.jobs.log_use import log_before_after, log_block
+from cuebook.jobs.typed_values import parse_values
 
 
 @click.command("log")

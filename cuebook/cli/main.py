@@ -58,14 +58,19 @@ class LazyGroup(click.Group):
 
 @click.group(cls=LazyGroup, invoke_without_command=True)
 @click.version_option(__version__, prog_name="cuebook")
+@click.option(
+    "--library", "location", envvar="CUEBOOK_LIBRARY", metavar="PATH", help="Folder of the library."
+)
 @click.pass_context
-def cuebook(ctx: click.Context) -> None:
+def cuebook(ctx: click.Context, location: str | None) -> None:
     """Find, log and review the words that steer movement.
 
     Without a command the screens open. Every command takes --json and --library.
     """
     if ctx.invoked_subcommand is None:
-        click.echo(ctx.get_help())
+        from cuebook.tui.app import run_app  # noqa: PLC0415
+
+        run_app(location)
 
 
 def run(arguments: list[str]) -> int:

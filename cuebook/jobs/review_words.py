@@ -19,8 +19,7 @@ def describe_review(document: Mapping[str, Any]) -> list[str]:
         is_wide = get_terminal_size().columns >= TABLE_WIDTH
         lines += (_describe_table if is_wide else _describe_blocks)(document["cues"])
         lines += ["", _describe_scale(document), *_describe_marks(document["cues"])]
-    lines += list(_describe_recorded(document.get("recorded") or ()))
-    lines += list(_describe_rest(document))
+    lines += list(describe_rest(document))
     return lines
 
 
@@ -167,7 +166,8 @@ def _describe_marks(cues: Sequence[Mapping[str, Any]]) -> Iterator[str]:
             yield f"  {cue['cue']}: " + "; ".join(marks)
 
 
-def _describe_recorded(recorded: Sequence[Mapping[str, Any]]) -> Iterator[str]:
+def describe_recorded(recorded: Sequence[Mapping[str, Any]]) -> Iterator[str]:
+    """Yield uses that cannot be ranked yet, with values, change and reason."""
     if not recorded:
         return
     yield ""
@@ -186,7 +186,9 @@ def _describe_recorded(recorded: Sequence[Mapping[str, Any]]) -> Iterator[str]:
         )
 
 
-def _describe_rest(document: Mapping[str, Any]) -> Iterator[str]:
+def describe_rest(document: Mapping[str, Any]) -> Iterator[str]:
+    """Yield what is recorded and not ranked, what is withheld, and the notes."""
+    yield from describe_recorded(document.get("recorded") or ())
     refused = [str(line) for line in document.get("withheld") or ()]
     if refused:
         yield ""
