@@ -374,7 +374,7 @@ def draw_tables(draw: st.DrawFn) -> tuple[Change, ...]:
 
 
 @given(changes=draw_tables())
-@settings(max_examples=60, deadline=None)
+@settings(max_examples=30, deadline=None)
 def test_any_small_table_gets_an_honest_answer(changes: tuple[Change, ...]) -> None:
     """Whatever the table, there is a document of finite numbers, and no strong word."""
     document = ranking_to_document(rank(changes))
