@@ -20,6 +20,7 @@ from cuebook.store.reading.rankings import (
 from cuebook.vocabulary import load_vocabulary
 
 Location = str | Path | None
+_DIRECTIONS = ("higher", "lower")
 
 
 @dataclass(frozen=True, slots=True)
@@ -43,9 +44,10 @@ class StoredReview:
 
 
 def read_questions(location: Location) -> tuple[QuestionLine, ...]:
-    """Return the questions that have data, those with most values first.
+    """Return the questions that have data.
 
-    A metric without a direction of its own gives two: more is better, less is better.
+    Metrics with a direction of their own come first, then those that are only kept an eye on,
+    in that direction; a metric without any gives two questions: more, or less, is better.
     """
     if not has_library(location):
         return ()
@@ -58,8 +60,8 @@ def read_questions(location: Location) -> tuple[QuestionLine, ...]:
             continue
         entry = registry.get(one.metric)
         own: tuple[str | None, ...] = (None,)
-        if entry.better not in {"higher", "lower"}:
-            own = ("higher", "lower")
+        if entry.better not in _DIRECTIONS:
+            own = (entry.watch_better,) if entry.watch_better in _DIRECTIONS else _DIRECTIONS
         for better in own:
             words = {None: "", "higher": ", more is better", "lower": ", less is better"}[better]
             lines.append(
@@ -70,7 +72,8 @@ def read_questions(location: Location) -> tuple[QuestionLine, ...]:
                     one.n_learners,
                 )
             )
-    return tuple(lines)
+    # Those with a direction of their own first: they are what goals are set in.
+    return tuple(sorted(lines, key=lambda line: line.request.better is not None))
 
 
 def read_stored_review(location: Location, request: ReviewRequest) -> StoredReview | None:

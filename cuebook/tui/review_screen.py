@@ -57,11 +57,11 @@ class ReviewScreen(FramedScreen):
     def on_questions_read(self, message: QuestionsRead) -> None:
         """List the questions; open the first."""
         message.stop()
-        self._questions = message.questions
+        self._questions = self._put_own_first(message.questions)
         listing = self.query_one("#questions", OptionList)
         kept = listing.highlighted
         listing.clear_options()
-        for one in message.questions:
+        for one in self._questions:
             listing.add_option(
                 Option(Text(f"{one.title}  ({one.n_values} values, {one.n_learners} learners)"))
             )
@@ -73,6 +73,19 @@ class ReviewScreen(FramedScreen):
             return
         listing.highlighted = min(kept or 0, len(message.questions) - 1)
         self.say("Enter opens a question. R ranks anew.")
+
+    def _put_own_first(self, questions: tuple[QuestionLine, ...]) -> tuple[QuestionLine, ...]:
+        """Put what is being worked on at the top."""
+        task, metric = self.shared.task, self.shared.metric
+        return tuple(
+            sorted(
+                questions,
+                key=lambda one: (
+                    -2 * (one.request.task == task and one.request.metric == metric)
+                    - (one.request.task == task)
+                ),
+            )
+        )
 
     def on_option_list_option_selected(self, event: OptionList.OptionSelected) -> None:
         """Open a question: the last ranking at once."""
