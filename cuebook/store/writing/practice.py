@@ -128,7 +128,7 @@ def add_block(tx: Session, stamp: Stamp, session_id: str, new: NewBlock) -> str:
             side=new.side,
             tempo=new.tempo,
             cycle=new.cycle,
-            protocol_id=_keep_protocol(tx, stamp, new.protocol),
+            protocol_id=keep_protocol(tx, stamp, new.protocol),
             wording_id=new.wording_id,
             others=new.others,
             chosen=new.chosen,
@@ -163,7 +163,8 @@ def _make_room(tx: Session, session_id: str, occurred_at: datetime) -> int:
     return number
 
 
-def _keep_protocol(tx: Session, stamp: Stamp, facts: Mapping[str, str]) -> str | None:
+def keep_protocol(tx: Session, stamp: Stamp, facts: Mapping[str, str]) -> str | None:
+    """Return the key of a set-up, storing it if it is new; None if nothing is said of it."""
     if not facts:
         return None
     digest = make_digest(facts)
