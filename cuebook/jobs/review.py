@@ -63,7 +63,7 @@ def review_library(
     )
     document = _finish(ranking, derived, entry, replace(request, task=task), log, cues)
     if keep:
-        _keep(location, request, document, revision, len(derived.uses))
+        _keep(location, request, document, revision, document["n_uses"])
     return ReviewDocument(document)
 
 

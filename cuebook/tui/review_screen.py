@@ -168,8 +168,8 @@ def describe_answer(document: Mapping[str, Any], width: int) -> Text:
             answer.append(f"    {draw_bar(cue, scale, document.get('worthwhile'))}\n")
             answer.append(
                 f"    {format_number(cue['effect'])} ({format_interval(cue)}), "
-                f"chance {format_chance(cue['p_better'])}; said {cue['uses']} times to "
-                f"{cue['learners']}; {cue.get('grade_words') or ''}\n"
+                f"chance {format_chance(cue['p_better'])}; {cue['uses']} uses, "
+                f"{cue['learners']} learners; {cue.get('grade_words') or ''}\n"
             )
     for line in describe_rest(document):
         answer.append(f"{line}\n")
