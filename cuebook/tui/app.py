@@ -14,8 +14,14 @@ from textual.events import Resize
 from textual.theme import Theme
 
 from cuebook.errors import CuebookError
-from cuebook.jobs.people import NewLearner, PersonLine, add_learner, list_people
-from cuebook.tui.boxes import PickBox, ReadBox
+from cuebook.jobs.people import (
+    NewLearner,
+    PersonLine,
+    add_learner,
+    list_people,
+    set_consent,
+)
+from cuebook.tui.boxes import ConsentBox, PickBox, ReadBox
 from cuebook.tui.find_screen import FindScreen
 from cuebook.tui.log_screen import LogScreen
 from cuebook.tui.review_screen import ReviewScreen
@@ -179,7 +185,26 @@ class CuebookApp(App[None]):
                 self.show_error(error)
                 return
             who = PersonLine(code, is_group=False, label="", note="new")
+            self._share(replace(self.shared, who=who))
+            self.push_screen(ConsentBox(code), lambda answer: self._note_consent(code, answer))
+            return
         self._share(replace(self.shared, who=who))
+
+    def _note_consent(self, code: str, answer: tuple[str, str, str] | None) -> None:
+        if answer is None:
+            return
+        given, given_by, assent = answer
+        try:
+            set_consent(
+                self.shared.location,
+                code,
+                "use_for_ranking",
+                given,
+                given_by=given_by,
+                assent=assent,
+            )
+        except CuebookError as error:
+            self.show_error(error)
 
     def _share(self, shared: Shared) -> None:
         self.shared = shared

@@ -109,3 +109,39 @@ class PickBox(ModalScreen[PersonLine | None]):
             listing.add_option(Option(Text(f"{one.code}  {kind}{one.note}")))
         if not self._shown:
             listing.add_option(Option(Text("none of that name"), disabled=True))
+
+
+class ConsentBox(ModalScreen[tuple[str, str, str] | None]):
+    """Ask once whether results may be used in rankings; no answer counts as no."""
+
+    BINDINGS: ClassVar[list[BindingType]] = [
+        Binding("y", "answer('yes', 'self', 'not_applicable')", "Yes"),
+        Binding("g", "answer('yes', 'parent_guardian', 'yes')", "Guardian and child"),
+        Binding("n", "answer('no', 'self', 'not_applicable')", "No"),
+        Binding("enter,escape", "leave_open", "Not asked"),
+    ]
+
+    def __init__(self, code: str) -> None:
+        super().__init__(classes="modal")
+        self._code = code
+
+    def compose(self) -> ComposeResult:
+        """Lay out the question and its keys."""
+        words = (
+            f"New learner: {self._code}\n"
+            "May results be used to rank cues? Asked and answered today:\n"
+            "Y      yes, said by the person\n"
+            "G      yes, a parent or guardian said so and the child agreed\n"
+            "N      no: results stay on their own page\n"
+            "Enter  not asked, which counts as no"
+        )
+        with Vertical():
+            yield Static(Text(words))
+
+    def action_answer(self, answer: str, given_by: str, assent: str) -> None:
+        """Hand the answer on."""
+        self.dismiss((answer, given_by, assent))
+
+    def action_leave_open(self) -> None:
+        """Leave the question open."""
+        self.dismiss(None)

@@ -136,3 +136,18 @@ async def test_an_empty_library_opens_and_says_what_to_do(tmp_path: Path) -> Non
         assert "Nothing is measured yet" in read_screen(app)
         await press(pilot, "f1")
         assert "F10  Leave" in read_screen(app)
+
+
+async def test_a_new_learner_is_asked_for_consent_once(tmp_path: Path) -> None:
+    """F7 adds a learner under a code of two words and notes the answer given."""
+    library = tmp_path / "library"
+    app = CuebookApp(library)
+    async with app.run_test(size=(80, 24)) as pilot:
+        await press(pilot, "f5")
+        await press(pilot, "f7")
+        assert "May results be used to rank cues?" in read_screen(app)
+        await press(pilot, "y")
+        assert app.shared.who is not None
+        code = app.shared.who.code
+    with open_for_reading(library) as connection:
+        assert read_practice_log(connection, ()).learners[code].may_be_ranked
