@@ -6,10 +6,10 @@ from collections.abc import Sequence
 from dataclasses import dataclass, fields
 
 import numpy as np
-from cuebook.evidence.preparation import prepare_uses
 from scipy.special import stdtr, stdtrit
 from support.simulated_libraries import Library
 
+from cuebook.evidence.preparation import prepare_uses
 from cuebook.evidence.question import ReviewQuestion
 from cuebook.evidence.ranking import rank_cues
 from cuebook.evidence.result import Ranking
