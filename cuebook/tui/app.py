@@ -61,7 +61,6 @@ KEYS = (
     "F3   Log: what was said, to whom, what followed",
     "F4   What shifted: which cues moved a measure",
     "F5   For whom: pick a learner or a group, or add a learner",
-    "F6   In Find, at a stop message: note that you stopped and referred",
     "F8   Light or dark",
     "F10  Leave",
     "",

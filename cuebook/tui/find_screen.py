@@ -112,7 +112,7 @@ class FindScreen(FramedScreen):
         if message.found.stop is not None:
             self.query_one("#understood", Static).update(Text(message.found.stop.message))
             self.query_one("#detail", Static).update("")
-            self.say("No cue is shown for this. F6 notes: stopped and referred.")
+            self.say("No cue is shown for this.")
             return
         self.query_one("#understood", Static).update(_describe_understood(message.found))
         for hit in message.found.hits:

@@ -62,9 +62,7 @@ class ReviewScreen(FramedScreen):
         kept = listing.highlighted
         listing.clear_options()
         for one in self._questions:
-            listing.add_option(
-                Option(Text(f"{one.title}  ({one.n_values} values, {one.n_learners} learners)"))
-            )
+            listing.add_option(Option(Text(f"{one.title}  ({_count_values(one)})")))
         if not message.questions:
             self.query_one("#answer", Static).update(
                 "Nothing is measured yet. Log values before and after a cue, or import recordings."
@@ -152,6 +150,11 @@ class ReviewScreen(FramedScreen):
         width = max(self.size.width - 4, 40)
         self.query_one("#answer", Static).update(describe_answer(document, width))
         self.query_one("#ranking", VerticalScroll).scroll_home(animate=False)
+
+
+def _count_values(question: QuestionLine) -> str:
+    learners = "learner" if question.n_learners == 1 else "learners"
+    return f"{question.n_values} values, {question.n_learners} {learners}"
 
 
 def describe_answer(document: Mapping[str, Any], width: int) -> Text:
