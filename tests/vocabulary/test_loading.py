@@ -83,3 +83,10 @@ def test_screen_word_falls_back_to_the_term_itself() -> None:
     assert vocabulary.screen_word("some_other_term") == "some other term"
     assert vocabulary.label("task", "sit_to_stand") == "sit to stand"
     assert vocabulary.label("feature", "range") == "Range / amplitude"
+
+
+def test_the_first_part_of_a_longer_name_is_recognised() -> None:
+    """A part that looks unlike the whole, letter by letter, still leads to it."""
+    assert find_nearest("paving", ["paving-slab-stride", "opening-drawer"]) == (
+        "paving-slab-stride",
+    )

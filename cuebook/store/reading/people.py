@@ -132,7 +132,7 @@ def require_group_key(connection: sqlite3.Connection, code: str) -> str:
 
 def _unknown(what: str, code: str, known: Iterable[str]) -> UnknownCodeError:
     nearest = find_nearest(code, known)
-    hint = f"Nearest known: {', '.join(nearest)}." if nearest else f"There is no {what} yet."
+    hint = f"Nearest known: {', '.join(nearest)}." if nearest else f"Check how the {what} is written."
     return UnknownCodeError(f"Unknown {what} '{code}'.", hint)
 
 

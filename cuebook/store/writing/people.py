@@ -153,7 +153,7 @@ def get_group(tx: Session, code: str) -> tables.LearnerGroup:
 def describe_unknown_code(what: str, code: str, known: Iterable[str]) -> UnknownCodeError:
     """Return the error for a code nobody has; it names the nearest known ones."""
     nearest = find_nearest(code, known)
-    hint = f"Nearest known: {', '.join(nearest)}." if nearest else f"There is no {what} yet."
+    hint = f"Nearest known: {', '.join(nearest)}." if nearest else f"Check how the {what} is written."
     return UnknownCodeError(f"Unknown {what} '{code}'.", hint)
 
 
