@@ -4,14 +4,12 @@ from __future__ import annotations
 
 import json
 import sqlite3
-from collections.abc import Iterable
 from dataclasses import dataclass
 from datetime import datetime
 
-from cuebook.errors import UnknownCodeError
 from cuebook.library.person import Group, Hold, Person, SafetyNote
 from cuebook.store.moments import parse_moment
-from cuebook.vocabulary import find_nearest
+from cuebook.store.unknown import describe_unknown
 
 
 @dataclass(frozen=True, slots=True)
@@ -117,7 +115,7 @@ def require_learner_key(connection: sqlite3.Connection, code: str) -> str:
     row = connection.execute("SELECT id FROM learner WHERE code = ?", (code,)).fetchone()
     if row is None:
         known = [line["code"] for line in connection.execute("SELECT code FROM learner")]
-        raise _unknown("learner", code, known)
+        raise describe_unknown("learner", code, known)
     return str(row["id"])
 
 
@@ -126,14 +124,8 @@ def require_group_key(connection: sqlite3.Connection, code: str) -> str:
     row = connection.execute("SELECT id FROM learner_group WHERE code = ?", (code,)).fetchone()
     if row is None:
         known = [line["code"] for line in connection.execute("SELECT code FROM learner_group")]
-        raise _unknown("group", code, known)
+        raise describe_unknown("group", code, known)
     return str(row["id"])
-
-
-def _unknown(what: str, code: str, known: Iterable[str]) -> UnknownCodeError:
-    nearest = find_nearest(code, known)
-    hint = f"Nearest known: {', '.join(nearest)}." if nearest else f"Check how the {what} is written."
-    return UnknownCodeError(f"Unknown {what} '{code}'.", hint)
 
 
 def read_person(connection: sqlite3.Connection, code: str) -> Person:

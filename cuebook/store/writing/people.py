@@ -10,16 +10,18 @@ from importlib import resources
 from sqlalchemy import Text, cast
 from sqlmodel import Session, col, delete, select
 
-from cuebook.errors import InputError, UnknownCodeError
+from cuebook.errors import InputError
 from cuebook.store.keys import make_key
 from cuebook.store.stamps import LOCAL_STAFF, Stamp, make_stamp
 from cuebook.store.tables import people as tables
 from cuebook.store.tables.practice import Block, Participation
 from cuebook.store.tables.practice import Session as Meeting
 from cuebook.store.tables.upkeep import Draft, RankingCache
+from cuebook.store.unknown import describe_unknown
 from cuebook.store.writing.replay import is_known
 from cuebook.store.writing.revisions import count_evidence
-from cuebook.vocabulary import find_nearest
+
+describe_unknown_code = describe_unknown
 
 
 def make_code(tx: Session) -> str:
@@ -148,13 +150,6 @@ def get_group(tx: Session, code: str) -> tables.LearnerGroup:
         known = tx.exec(select(tables.LearnerGroup.code)).all()
         raise describe_unknown_code("group", code, known)
     return found
-
-
-def describe_unknown_code(what: str, code: str, known: Iterable[str]) -> UnknownCodeError:
-    """Return the error for a code nobody has; it names the nearest known ones."""
-    nearest = find_nearest(code, known)
-    hint = f"Nearest known: {', '.join(nearest)}." if nearest else f"Check how the {what} is written."
-    return UnknownCodeError(f"Unknown {what} '{code}'.", hint)
 
 
 def add_consent(
@@ -329,11 +324,16 @@ def erase_learner(tx: Session, learner_id: str) -> list[str]:
 
     code = tx.get_one(tables.Learner, learner_id).code
     # Sessions and blocks of a group stay: only this learner's part of them goes.
+    attended = tx.exec(
+        select(Participation.block_id).where(Participation.learner_id == learner_id)
+    ).all()
     tx.exec(delete(Meeting).where(col(Meeting.learner_id) == learner_id))
     tx.exec(delete(Participation).where(col(Participation.learner_id) == learner_id))
     tx.exec(delete(tables.Learner).where(col(tables.Learner.id) == learner_id))
     tx.flush()
-    empty = select(Block.id).where(~col(Block.id).in_(select(Participation.block_id)))
+    empty = select(Block.id).where(
+        col(Block.id).in_(attended), ~col(Block.id).in_(select(Participation.block_id))
+    )
     tx.exec(delete(Block).where(col(Block.id).in_(empty)))
     # Stored rankings may list the learner's own values; drafts may name them.
     tx.exec(delete(RankingCache))
