@@ -141,7 +141,7 @@ def test_a_group_gives_each_learner_an_own_use_and_one_event() -> None:
 
 
 @pytest.mark.parametrize(("hours", "is_retention"), [(23, False), (24, True)])
-def test_retention_needs_a_night(hours: float, is_retention: bool) -> None:  # noqa: FBT001
+def test_retention_needs_a_night(hours: float, is_retention: bool) -> None:
     """An opening sooner than 24 hours later is no retention test."""
     later = visit("b", day=0.0, name="later")
     later = LoggedSession("later", START + timedelta(hours=hours), later.blocks)

@@ -21,7 +21,7 @@ def list_data_files() -> list[str]:
     return sorted(
         str(path.relative_to(folder))
         for path in folder.rglob("*")
-        if path.is_file() and path.suffix not in {".md"}
+        if path.is_file() and path.suffix != ".md"
     )
 
 
