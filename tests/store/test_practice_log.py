@@ -146,7 +146,7 @@ def test_a_use_entered_in_one_go_is_not_marked(library: Library) -> None:
 def test_only_an_order_drawn_before_the_measure_counts_as_random(
     library: Library,
     drawn_minute: float,
-    is_randomised: bool,  # noqa: FBT001 - a table of cases
+    is_randomised: bool,
 ) -> None:
     """A draw that could have known the before-measure is not random."""
     with library.transaction() as tx:
