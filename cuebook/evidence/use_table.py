@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 from collections import Counter, defaultdict
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
@@ -10,6 +11,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from cuebook.errors import InputError, NeedsAnswerError, Place, UsageError
+from cuebook.evidence.table_visits import RowPlace, Visits
 from cuebook.practice.changes import AttemptSet, Change, ChangeKey, NoChange, UseRecord
 from cuebook.practice.scales import AttemptScale
 
@@ -18,6 +20,7 @@ if TYPE_CHECKING:
 
 REQUIRED = ("cue", "learner", "before", "after")
 PICKED = ("metric", "contrast", "task")
+WEIGHT_TOLERANCE = 0.01
 _FIRST_ROW = 2
 """Line of the first use: the header is line 1."""
 
@@ -51,6 +54,13 @@ class _Faults:
 
     def refuse(self, row: int, reason: str) -> None:
         self.refused.append(RefusedRow(row, reason))
+
+    def close(self) -> None:
+        """Put refused rows in the order of the file and say how many there are."""
+        self.refused.sort(key=lambda one: one.row)
+        if self.refused:
+            many = "row" if len(self.refused) == 1 else "rows"
+            self.notes.append(f"{len(self.refused)} {many} could not be used")
 
 
 def read_use_table(
@@ -89,7 +99,8 @@ def read_use_table(
         rows, picked[name] = _pick(rows, name, given)
     contrast_used = picked["contrast"] or contrast or "immediate"
     records = _build(rows, scale, contrast_used, picked, faults)
-    changes, without = _gather_parts(records)
+    changes, without = _gather_parts(records, faults)
+    faults.close()
     if not changes and not without:
         first = faults.refused[0] if faults.refused else None
         detail = f" Row {first.row}: {first.reason}." if first else ""
@@ -116,20 +127,43 @@ def _load(path: Path) -> pd.DataFrame:
     if path.is_dir():
         raise InputError(f"{path} is a folder.", "Name a CSV or Parquet file.", place)
     try:
-        if path.suffix.lower() == ".parquet":
-            frame = pd.read_parquet(path)
-        else:
-            frame = pd.read_csv(path, dtype=str, keep_default_na=False, encoding="utf-8-sig")
+        read = pd.read_parquet if path.suffix.lower() == ".parquet" else _read_text
+        frame = read(path)
     except FileNotFoundError as error:
         raise InputError(f"There is no file {path}.", "Check its name.", place) from error
     except (OSError, ValueError) as error:  # pandas' and pyarrow's own errors are ValueErrors
+        line = re.search(r"line (\d+), saw", str(error))
+        where = f": line {line[1]} has more cells than the header" if line else ""
         raise InputError(
-            f"{path} cannot be read as a table.", "Save it as CSV or Parquet again.", place
+            f"{path} cannot be read as a table{where}.",
+            "Save it as CSV or Parquet again.",
+            Place(file=str(path), row=int(line[1])) if line else place,
         ) from error
     frame.columns = [str(name).strip().lower() for name in frame.columns]
     if len(set(frame.columns)) != len(frame.columns):
         raise InputError(f"{path} names a column twice.", "Rename one.", place)
     return frame.reset_index(drop=True)
+
+
+def _read_text(path: Path) -> pd.DataFrame:
+    """Read CSV with the header as an ordinary row.
+
+    A reader that is told of a header renames columns that are there twice, and shifts the cells
+    of rows that are too long.
+    """
+    import pandas as pd  # noqa: PLC0415
+
+    table = pd.read_csv(
+        path,
+        header=None,
+        dtype=str,
+        keep_default_na=False,
+        encoding="utf-8-sig",
+        skip_blank_lines=False,
+    )
+    frame = table.iloc[1:].reset_index(drop=True)
+    frame.columns = pd.Index(table.iloc[0].tolist())
+    return frame
 
 
 Row = tuple[int, dict[str, Any]]
@@ -174,8 +208,11 @@ def _number(row: Mapping[str, Any], name: str) -> float | None:
 class _Part:
     """One row, read; ``share`` of a change that several rows may belong to."""
 
+    row: int
     change_name: str
-    share: float
+    """Empty: the row is a change of its own."""
+    share: float | None
+    """None: not said."""
     result: Change | NoChange
 
 
@@ -186,24 +223,32 @@ def _build(
     picked: Mapping[str, str],
     faults: _Faults,
 ) -> list[_Part]:
-    visits = _Visits(rows, faults)
+    visits = Visits(
+        [
+            RowPlace(number, _text(row, "learner"), _text(row, "session"), _text(row, "order"))
+            for number, row in rows
+        ]
+    )
+    faults.notes += visits.list_notes()
+    if scale.better == "target":
+        faults.notes.append("means, not attempts, were folded at the target")
     seen: set[tuple[str, ...]] = set()
     parts = []
-    n_refused = len(faults.refused)
     for number, row in rows:
         mark = tuple(_text(row, name) for name in sorted(row))
-        if mark in seen and any(mark):
+        if not any(mark):
+            faults.refuse(number, "empty")
+            continue
+        if mark in seen:
             faults.refuse(number, "the same as an earlier row")
             continue
         seen.add(mark)
         try:
             part = _read_row(number, row, scale, contrast, picked, visits)
-        except (ValueError, InputError) as error:
-            faults.refuse(number, error.message if isinstance(error, InputError) else str(error))
+        except InputError as error:
+            faults.refuse(number, error.message.rstrip("."))
             continue
         parts.append(part)
-    if len(faults.refused) > n_refused:
-        faults.notes.append(f"{len(faults.refused) - n_refused} rows could not be used")
     return parts
 
 
@@ -213,7 +258,7 @@ def _read_row(
     scale: AttemptScale,
     contrast: str,
     picked: Mapping[str, str],
-    visits: _Visits,
+    visits: Visits,
 ) -> _Part:
     learner = _text(row, "learner")
     if not learner:
@@ -236,21 +281,24 @@ def _read_row(
         chosen=chosen,
         stop_reason=_text(row, "stopped") or None,
     )
+    _read_cell(row, "order")
     share = _read_cell(row, "weight")
+    if share is not None and not 0 < share <= 1:
+        raise InputError(f"weight is {share:g}, not a share of one change")
     before = _read_set(row, "before", scale)
     if use.stop_reason is not None:
-        return _Part("", 1.0, NoChange(use, contrast, "stopped", before))
+        return _Part(number, "", None, NoChange(use, contrast, "stopped", before))
     after = _read_set(row, "after", scale)
     if before is None or after is None:
         if before is None and after is None:
             raise InputError("neither before nor after")
         reason = "no_before" if before is None else "no_after"
-        return _Part("", 1.0, NoChange(use, contrast, reason, before))
-    if scale.better == "target" and not 0.5 <= before.n / after.n <= 2.0:
+        return _Part(number, "", None, NoChange(use, contrast, reason, before))
+    if scale.better == "target" and not 0.5 <= _count(row, "before") / _count(row, "after") <= 2.0:
         raise InputError("folding means at a target needs like numbers of attempts")
     key = ChangeKey(picked["metric"] or scale.metric, "table", picked["task"])
     change = Change(use, contrast, key, before, after, days=_read_cell(row, "days") or 0.0)
-    return _Part(_text(row, "change"), 1.0 if share is None else share, change)
+    return _Part(number, _text(row, "change"), share, change)
 
 
 def _read_cell(row: Mapping[str, Any], name: str) -> float | None:
@@ -260,15 +308,20 @@ def _read_cell(row: Mapping[str, Any], name: str) -> float | None:
         raise InputError(f"{name} is '{_text(row, name)}', not a finite number") from error
 
 
+def _count(row: Mapping[str, Any], name: str) -> int:
+    """Return the number of attempts behind a mean; 1 where it is not said."""
+    n = _read_cell(row, f"n_{name}")
+    if n is not None and (n != int(n) or n < 1):
+        raise InputError(f"n_{name} is {n:g}, not a whole number of at least 1")
+    return 1 if n is None else int(n)
+
+
 def _read_set(row: Mapping[str, Any], name: str, scale: AttemptScale) -> AttemptSet | None:
     """Return the mean of attempts as a set; None where the cell is empty."""
     mean = _read_cell(row, name)
     if mean is None:
         return None
-    n = _read_cell(row, f"n_{name}")
-    count = 1 if n is None else int(n)
-    if n is not None and (n != count or count < 1):
-        raise InputError(f"n_{name} is {n:g}, not a whole number of at least 1")
+    count = _count(row, name)
     spread = _read_cell(row, f"sd_{name}")
     if spread is not None and (spread < 0 or count == 1):
         raise InputError(f"sd_{name} needs at least two attempts and cannot be negative")
@@ -284,87 +337,46 @@ def _read_set(row: Mapping[str, Any], name: str, scale: AttemptScale) -> Attempt
     return AttemptSet(scaled, count, squares)
 
 
-class _Visits:
-    """Sessions and places in them, from what the table says or from the order of its rows."""
-
-    def __init__(self, rows: list[Row], faults: _Faults) -> None:
-        self._session: dict[int, str] = {}
-        self._visit: dict[int, int] = {}
-        self._order: dict[int, int] = {}
-        has_session = any(_text(row, "session") for _, row in rows)
-        has_order = any(_text(row, "order") for _, row in rows)
-        faults.notes.append(
-            "sessions: as the column says" if has_session else "sessions: one a row, in row order"
-        )
-        if not has_order:
-            faults.notes.append("place in the session: row order")
-        by_learner: dict[str, list[Row]] = defaultdict(list)
-        for number, row in rows:
-            by_learner[_text(row, "learner")].append((number, row))
-        for learner, own in by_learner.items():
-            self._read_learner(learner, own, has_session=has_session)
-
-    def _read_learner(self, learner: str, own: list[Row], *, has_session: bool) -> None:
-        names = [
-            _text(row, "session") if has_session else str(place)
-            for place, (_, row) in enumerate(own)
-        ]
-        order = _order_sessions(names)
-        count: Counter[str] = Counter()
-        for (number, row), name in zip(own, names, strict=True):
-            count[name] += 1
-            given = _text(row, "order")
-            self._session[number] = f"{learner}/{name}"
-            self._visit[number] = order[name]
-            self._order[number] = (
-                int(float(given)) if given.replace(".", "", 1).isdigit() else count[name]
-            )
-
-    def session_of(self, number: int) -> str:
-        """Return the session of a row."""
-        return self._session[number]
-
-    def visit_of(self, number: int) -> int:
-        """Return which visit of the learner a row belongs to, from 0."""
-        return self._visit[number]
-
-    def order_of(self, number: int) -> int:
-        """Return the place of a row in its session, from 1."""
-        return self._order[number]
-
-
-def _order_sessions(names: Sequence[str]) -> dict[str, int]:
-    """Return the place of each session: by number, by ISO date, else by first appearance."""
-    distinct = list(dict.fromkeys(names))
-    try:
-        distinct = sorted(distinct, key=float)
-    except ValueError:
-        if all(len(name) >= 10 and name[4] == "-" and name[7] == "-" for name in distinct):
-            distinct = sorted(distinct)
-    return {name: place for place, name in enumerate(distinct)}
-
-
-def _gather_parts(parts: Sequence[_Part]) -> tuple[list[Change], list[NoChange]]:
+def _gather_parts(parts: Sequence[_Part], faults: _Faults) -> tuple[list[Change], list[NoChange]]:
     """Join rows of the same retention change; give single rows as they are."""
     changes: list[Change] = []
     without: list[NoChange] = []
-    shared: dict[tuple[str, str], list[_Part]] = defaultdict(list)
+    shared: dict[tuple[str, str], list[tuple[_Part, Change]]] = defaultdict(list)
     for part in parts:
         if isinstance(part.result, NoChange):
             without.append(part.result)
         elif part.change_name:
-            shared[part.result.use.learner, part.change_name].append(part)
+            shared[part.result.use.learner, part.change_name].append((part, part.result))
         else:
             changes.append(part.result)
-    for own in shared.values():
-        first = own[0].result
-        if not isinstance(first, Change):  # pragma: no cover - only changes are gathered
+    for (_, name), own in shared.items():
+        fault = _find_fault(own)
+        if fault is None:
+            changes.append(_join(own))
             continue
-        total = math.fsum(part.share for part in own)
-        weights = tuple(
-            (part.result.use.cue, part.share / total)
-            for part in own
-            if part.result.use.cue is not None
-        )
-        changes.append(replace(first, weights=weights))
+        for part, _ in own:
+            faults.refuse(part.row, f"change {name}: {fault}")
     return changes, without
+
+
+def _find_fault(own: Sequence[tuple[_Part, Change]]) -> str | None:
+    """Return why rows cannot be parts of one change; None if they can."""
+    shares = [part.share for part, _ in own if part.share is not None]
+    if shares and len(shares) < len(own):
+        return "some of its rows have no weight"
+    if shares and abs(math.fsum(shares) - 1.0) > WEIGHT_TOLERANCE:
+        return f"its weights sum to {math.fsum(shares):g}, not to 1"
+    if len({(change.before, change.after) for _, change in own}) > 1:
+        return "its rows differ in before or after"
+    return None
+
+
+def _join(own: Sequence[tuple[_Part, Change]]) -> Change:
+    """Return one change of several cues; without weights they share it evenly."""
+    total = math.fsum(part.share or 1.0 for part, _ in own)
+    weights = tuple(
+        (change.use.cue, (part.share or 1.0) / total)
+        for part, change in own
+        if change.use.cue is not None
+    )
+    return replace(own[0][1], weights=weights)
