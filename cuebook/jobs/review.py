@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping, Sequence
 from dataclasses import replace
 from datetime import UTC, datetime
@@ -23,7 +24,8 @@ from cuebook.store.reading.rankings import read_revision
 from cuebook.vocabulary import load_vocabulary, require_slug
 
 if TYPE_CHECKING:
-    from cuebook.evidence.question import WatchMetric
+    from cuebook.evidence.preparation import PreparedUses
+    from cuebook.evidence.question import ReviewQuestion, WatchMetric
     from cuebook.evidence.result import Ranking
     from cuebook.library.cues import Cue
     from cuebook.practice.changes import Derived
@@ -98,9 +100,11 @@ def read_better(text: str) -> tuple[str, float | None]:
         return direction, None
     if direction == "target" and separator:
         try:
-            return "target", float(value)
+            goal = float(value)
         except ValueError:
-            pass
+            goal = math.nan
+        if math.isfinite(goal):
+            return "target", goal
     raise UsageError(
         f"--better reads '{text}'.", "Write higher, lower, or target:VALUE such as target:0."
     )
@@ -173,7 +177,6 @@ def _rank(
     from cuebook.evidence.preparation import prepare_uses  # noqa: PLC0415
     from cuebook.evidence.question import DEFAULT_ALLOWANCE, ReviewQuestion  # noqa: PLC0415
     from cuebook.evidence.ranking import rank_cues  # noqa: PLC0415
-    from cuebook.evidence.thresholds import convert_step  # noqa: PLC0415
 
     of_task = _keep_task(derived, request.task)
     prepared = prepare_uses(
@@ -202,12 +205,22 @@ def _rank(
             if value is not None
         },
     )
-    if request.worthwhile is not None:
-        if not request.worthwhile > 0:
-            raise UsageError("--worthwhile must be above 0.", "Give the least that matters.")
-        step = convert_step(request.worthwhile, question, prepared.moments.mean_before)
-        question = replace(question, worthwhile=step)
+    question = _set_worthwhile(question, request.worthwhile, prepared)
     return rank_cues(prepared, question, harms=of_task.harms, watch=watch)
+
+
+def _set_worthwhile(
+    question: ReviewQuestion, worthwhile: float | None, prepared: PreparedUses
+) -> ReviewQuestion:
+    """Return the question with the smallest difference that matters on the model's scale."""
+    from cuebook.evidence.thresholds import convert_step  # noqa: PLC0415
+
+    if worthwhile is None:
+        return question
+    if not (worthwhile > 0 and math.isfinite(worthwhile)):
+        raise UsageError("--worthwhile must be above 0.", "Give the least that matters.")
+    step = convert_step(worthwhile, question, prepared.moments.mean_before)
+    return replace(question, worthwhile=step)
 
 
 def _keep_task(derived: Derived, task: str | None) -> Derived:
@@ -336,7 +349,6 @@ def review_table(request: TableRequest) -> ReviewDocument:
     from cuebook.evidence.question import DEFAULT_ALLOWANCE, ReviewQuestion  # noqa: PLC0415
     from cuebook.evidence.ranking import rank_cues  # noqa: PLC0415
     from cuebook.evidence.ranking_document import ranking_to_document  # noqa: PLC0415
-    from cuebook.evidence.thresholds import convert_step  # noqa: PLC0415
     from cuebook.evidence.use_table import read_use_table  # noqa: PLC0415
 
     better, target = read_better(request.better)
@@ -357,18 +369,17 @@ def review_table(request: TableRequest) -> ReviewDocument:
         allowance=DEFAULT_ALLOWANCE if request.allowance is None else request.allowance,
         task=table.task or None,
     )
-    if request.worthwhile is not None:
-        step = convert_step(request.worthwhile, question, prepared.moments.mean_before)
-        question = replace(question, worthwhile=step)
+    question = _set_worthwhile(question, request.worthwhile, prepared)
     document: dict[str, Any] = ranking_to_document(rank_cues(prepared, question))
     document["refused_rows"] = [
         {"row": refused.row, "reason": refused.reason} for refused in table.refused
     ]
     document["notes"] = [*table.notes, *document["notes"]]
-    document["withheld"] = [
+    document["refused"] = [
         *document["refused"],
         *(f"row {refused.row}: {refused.reason}" for refused in table.refused),
     ]
+    document["withheld"] = document["refused"]
     document["contrast_words"] = name_contrast(table.contrast)
     document["recorded"] = []
     document["opening"] = describe_opening(document)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
 from shutil import get_terminal_size
+from textwrap import wrap
 from typing import Any
 
 WORDS_WIDTH = 26
@@ -13,14 +14,24 @@ TABLE_WIDTH = 140
 
 def describe_review(document: Mapping[str, Any]) -> list[str]:
     """Return the lines a person reads: what can be said, the ranking, what is withheld."""
+    width = get_terminal_size().columns
     lines = [_describe_question(document), *_describe_opening(document), ""]
     lines += [_describe_practice_alone(document), _describe_worthwhile(document), ""]
     if document["cues"]:
-        is_wide = get_terminal_size().columns >= TABLE_WIDTH
-        lines += (_describe_table if is_wide else _describe_blocks)(document["cues"])
+        table = list(_describe_table(document["cues"]))
+        is_wide = width >= max(TABLE_WIDTH, *map(len, table))
+        lines += table if is_wide else _describe_blocks(document["cues"])
         lines += ["", _describe_scale(document), *_describe_marks(document["cues"])]
-    lines += list(describe_rest(document))
-    return lines
+    lines += describe_rest(document)
+    return [part for line in lines for part in _fit(line, width)]
+
+
+def _fit(line: str, width: int) -> list[str]:
+    """Return a line as lines that fit; what goes on is indented further."""
+    if len(line) <= width:
+        return [line]
+    indent = line[: len(line) - len(line.lstrip())]
+    return wrap(line.strip(), width, initial_indent=indent, subsequent_indent=f"{indent}    ")
 
 
 def format_number(value: float | None, *, signed: bool = True) -> str:
