@@ -82,7 +82,7 @@ class Change:
     weights: tuple[tuple[str, float], ...] = ()
     """Cues and their shares; empty: the use's own cue alone (or practice alone)."""
     days: float = 0.0
-    """Days between the two sets; 0 within one session."""
+    """Days from the session of the use to the after-set; 0 within one session."""
     flags: tuple[str, ...] = ()
 
     @property

@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from collections import Counter
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
-from cuebook.practice.across import derive_across
+from cuebook.practice.across import OTHERS_MANY, derive_across
 from cuebook.practice.changes import (
     CONTRASTS,
     Change,
@@ -19,13 +19,12 @@ from cuebook.practice.harms import HarmCounter
 from cuebook.practice.log import ACQUISITION, PracticeLog
 from cuebook.practice.scales import AttemptScale
 from cuebook.practice.timeline import UNKNOWN, TaskKey, Visit, build_visits
-from cuebook.practice.transfers import derive_transfers
+from cuebook.practice.transfers import Moment, derive_transfers, list_moments
 from cuebook.practice.visit_sets import MetricView, list_recipes
 from cuebook.practice.within import derive_during, derive_immediate, find_confused
 
-OTHERS_MANY = "many_other_cues"
 DO_NOT_USE = "session_not_to_be_used"
-_DEPTH = {"no_before": 0, "no_clean_between": 0, "session_began_with_cue": 0}
+_OF_ONE_USE = ("during", "immediate", "transfer", "transfer_later")
 
 
 @dataclass
@@ -38,6 +37,25 @@ class _Found:
     confused: list[ConfusedPair] = field(default_factory=list)
     left_out: Counter[str] = field(default_factory=Counter)
     harms: HarmCounter = field(default_factory=HarmCounter)
+
+    def settle(self, answers: Sequence[Change | NoChange]) -> None:
+        """Keep the changes of all recipes, or the one reason that got furthest."""
+        changes = [answer for answer in answers if isinstance(answer, Change)]
+        reasons = [answer for answer in answers if isinstance(answer, NoChange)]
+        if changes:
+            self.changes.extend(changes)
+        else:
+            self.without.append(max(reasons, key=lambda answer: answer.before is not None))
+
+
+@dataclass(frozen=True, slots=True)
+class _Views:
+    """How the log is looked at."""
+
+    base: MetricView
+    """Without a recipe."""
+    keeps_many: bool
+    """On a learner's own page: uses among many other cues, which no ranking takes, are kept."""
 
 
 def derive_changes(
@@ -64,7 +82,7 @@ def derive_changes(
     current consent for ranking are left out altogether, past uses included, unless the page is
     their own.
     """
-    view = MetricView(metric, scale, drop_first)
+    views = _Views(MetricView(metric, scale, drop_first=drop_first), only_learner is not None)
     found = _Found()
     for code in sorted(_list_learners(log)):
         if only_learner not in {None, code}:
@@ -76,7 +94,7 @@ def derive_changes(
             if n_uses:
                 found.left_out["no_consent_for_ranking"] += n_uses
             continue
-        _derive_learner(visits, view, found)
+        _derive_learner(visits, views, found)
         found.harms.count_declined(log, code)
     return Derived(
         tuple(found.uses),
@@ -97,72 +115,49 @@ def _list_learners(log: PracticeLog) -> set[str]:
     }
 
 
-def _derive_learner(visits: dict[TaskKey, list[Visit]], view: MetricView, found: _Found) -> None:
+def _derive_learner(visits: dict[TaskKey, list[Visit]], views: _Views, found: _Found) -> None:
+    moments = list_moments(visits.values())
+    recipes = list_recipes([one for listed in visits.values() for one in listed], views.base.metric)
     for task in sorted(visits):
-        of_task = visits[task]
-        recipes = list_recipes([visit for other in visits.values() for visit in other], view.metric)
-        for index, visit in enumerate(of_task):
-            found.left_out["cue_not_known"] += sum(
+        for index, visit in enumerate(visits[task]):
+            unknown = sum(
                 step.kind == UNKNOWN and step.block.phase == ACQUISITION for step in visit.steps
             )
+            if unknown:
+                found.left_out["cue_not_known"] += unknown
+            by_recipe = []
             for recipe in recipes:
-                found.confused.extend(find_confused(visit, view, recipe))
-            answers = [_answer_visit(visits, of_task, index, view, recipe) for recipe in recipes]
+                view = replace(views.base, recipe=recipe)
+                found.confused.extend(find_confused(visit, view))
+                across = derive_across(visits[task], index, view, keeps_many=views.keeps_many)
+                within = _answer_within(moments, visit, view, keeps_many=views.keeps_many)
+                by_recipe.append({**within, **across})
             for use in visit.uses:
                 found.uses.append(use.record)
                 found.harms.count_use(use)
                 for contrast in CONTRASTS:
-                    _settle(
-                        [answer[use.record.use, contrast] for answer in answers],
-                        use.record,
-                        contrast,
-                        visit,
-                        found,
-                    )
+                    if visit.session.do_not_use:
+                        found.without.append(NoChange(use.record, contrast, DO_NOT_USE))
+                        continue
+                    found.settle([answers[use.record.use, contrast] for answers in by_recipe])
 
 
-_Answers = dict[tuple[str, str], Change | NoChange]
-
-
-def _answer_visit(
-    visits: dict[TaskKey, list[Visit]],
-    of_task: Sequence[Visit],
-    index: int,
-    view: MetricView,
-    recipe: str,
-) -> _Answers:
-    """Return for each use and contrast of a visit its change or its reason, for one recipe."""
-    visit = of_task[index]
-    answers: _Answers = {}
-    across = derive_across(of_task, index, view, recipe)
-    for place, use in enumerate(visit.uses):
-        name = use.record.use
-        answers[name, "during"] = derive_during(visit, use, view, recipe)
-        answers[name, "immediate"] = derive_immediate(visit, use, view, recipe)
-        for contrast, answer in derive_transfers(visits, visit, use, view, recipe).items():
-            answers[name, contrast] = answer
-        for contrast, listed in across.items():
-            answers[name, contrast] = listed[place]
+def _answer_within(
+    moments: Sequence[Moment], visit: Visit, view: MetricView, *, keeps_many: bool
+) -> dict[tuple[str, str], Change | NoChange]:
+    """Return the changes and reasons that each use of a visit has on its own."""
+    answers: dict[tuple[str, str], Change | NoChange] = {}
+    for use in visit.uses:
+        record = use.record
+        if record.others == "many" and not keeps_many:
+            of_use: dict[str, Change | NoChange] = {
+                name: NoChange(record, name, OTHERS_MANY) for name in _OF_ONE_USE
+            }
+        else:
+            of_use = {
+                "during": derive_during(visit, use, view),
+                "immediate": derive_immediate(visit, use, view),
+                **derive_transfers(moments, visit, use, view),
+            }
+        answers.update({(record.use, name): answer for name, answer in of_use.items()})
     return answers
-
-
-def _settle(
-    answers: list[Change | NoChange],
-    record: UseRecord,
-    contrast: str,
-    visit: Visit,
-    found: _Found,
-) -> None:
-    """Keep the changes of all recipes, or the one reason that got furthest."""
-    if visit.session.do_not_use:
-        found.without.append(NoChange(record, contrast, DO_NOT_USE))
-        return
-    if record.others == "many":
-        found.without.append(NoChange(record, contrast, OTHERS_MANY))
-        return
-    changes = [answer for answer in answers if isinstance(answer, Change)]
-    if changes:
-        found.changes.extend(changes)
-        return
-    reasons = [answer for answer in answers if isinstance(answer, NoChange)]
-    found.without.append(max(reasons, key=lambda answer: _DEPTH.get(answer.reason, 1)))

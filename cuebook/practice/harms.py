@@ -7,7 +7,7 @@ from collections.abc import Iterator
 
 from cuebook.practice.changes import HarmTally
 from cuebook.practice.log import PracticeLog
-from cuebook.practice.timeline import Use
+from cuebook.practice.timeline import Use, has_declined
 
 
 class HarmCounter:
@@ -55,11 +55,5 @@ def _list_declined(log: PracticeLog, learner: str) -> Iterator[str]:
     for session in log.sessions:
         for block in session.blocks:
             for part in block.participations:
-                if (
-                    part.learner == learner
-                    and block.cue is not None
-                    and part.reaction == "declined"
-                    and not part.attempts
-                    and not any(part.values.values())
-                ):
+                if part.learner == learner and block.cue is not None and has_declined(part):
                     yield block.cue

@@ -39,6 +39,11 @@ class AttemptScale:
                 f"{self.metric} has no direction of its own.",
                 "Say what is better: --better higher, lower or target:VALUE.",
             )
+        if self.transform not in TRANSFORMS:
+            raise NeedsAnswerError(
+                f"{self.metric}: no transform is called {self.transform}.",
+                f"Known are {', '.join(TRANSFORMS)}.",
+            )
         if self.better == "target" and self.target is None:
             raise NeedsAnswerError(
                 f"{self.metric} is best at a target.", "Name it: --better target:VALUE."
@@ -59,7 +64,8 @@ class AttemptScale:
 
         Raises
         ------
-        InputError : a negative value where the scale has none.
+        InputError : a value where the scale has none: negative, or a share (logit) that is not
+            between 0 and 1. Hits out of tries go through ``transform_hits``.
         """
         if self.transform == "none":
             return value, None
@@ -68,6 +74,13 @@ class AttemptScale:
                 f"{self.metric}: {value:g} is negative, which this measure cannot be.",
                 "Correct or remove the value.",
             )
+        if self.transform == "logit":
+            if not 0 < value < 1:
+                raise InputError(
+                    f"{self.metric}: {value:g} is not a share between 0 and 1.",
+                    "Give hits and tries, or use --transform none.",
+                )
+            return math.log(value / (1.0 - value)), None
         if self.transform == "sqrt":
             return math.sqrt(value + 3.0 / 8.0), None
         if value == 0:

@@ -35,18 +35,11 @@ def build_set(
     Dropped: marked invalid, without a value, made after a stop, other recipes. Not dropped:
     outliers (flagged), ties, the first attempt (unless ``drop_first`` and two values remain).
     """
-    usable = [
-        value
-        for value in values
-        if value.recipe == recipe
-        and value.is_valid
-        and value.value is not None
-        and math.isfinite(value.value)
-        and not value.is_after_stop
-    ]
+    of_recipe = [value for value in values if value.recipe == recipe]
+    usable = [value for value in of_recipe if is_usable(value)]
     if not usable:
         return None
-    if drop_first and len(usable) > 2:
+    if drop_first and len(usable) > 2 and is_usable(of_recipe[0]):
         usable = usable[1:]
     scaled = scale.apply([float(value.value) for value in usable if value.value is not None])
     flags = list(scaled.flags)
@@ -55,6 +48,16 @@ def build_set(
     if _has_outlier(scaled.values):
         flags.append("outlier")
     return FlaggedSet(sum_up(scaled.values), tuple(flags))
+
+
+def is_usable(value: AttemptValue) -> bool:
+    """Return whether an attempt counts: measured, valid, made before any stop."""
+    return (
+        value.is_valid
+        and value.value is not None
+        and math.isfinite(value.value)
+        and not value.is_after_stop
+    )
 
 
 def sum_up(values: Sequence[float]) -> AttemptSet:

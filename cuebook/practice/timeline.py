@@ -15,12 +15,19 @@ from cuebook.practice.log import (
     LoggedSession,
     PracticeLog,
 )
+from cuebook.practice.sets import is_usable
 
-TaskKey = tuple[str, tuple[tuple[str, str], ...]]
-"""Task with side, aid and the other facts that make a key differ."""
+Facts = tuple[tuple[str, str], ...]
+TaskKey = tuple[str, Facts]
+"""Task with side and aid: the reach of "before", "between" and "next"."""
+TASK_FACTS = frozenset({"side", "walking_aid"})
+"""Other facts (footwear, seat height, place …) make another key, yet the same task: a cue given
+at another seat height was given all the same."""
 
 CUED, ALONE, UNKNOWN, CLEAN = "cued", "alone", "unknown", "clean"
 TEMPO_TOLERANCE = 0.10
+_OTHERS = ("none", "unknown", "some", "many")
+"""Other cues in a block, from best to worst."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,6 +38,24 @@ class Step:
     """cued, alone (practice without a cue), unknown (a cue was given, not known which), clean."""
     block: LoggedBlock
     part: LoggedParticipation
+
+    @property
+    def conditions(self) -> Facts:
+        """Return the facts that make a key differ, sorted."""
+        return tuple(sorted(self.block.conditions))
+
+    def is_comparable_to(self, other: Step) -> bool:
+        """Return whether attempts of both steps may be compared: same key but for the metric."""
+        return (
+            self.block.task == other.block.task
+            and self.conditions == other.conditions
+            and is_same_tempo(self.block.tempo, other.block.tempo)
+        )
+
+    def has_usable(self, metric: str | None = None) -> bool:
+        """Return whether a metric (any, if None) has a usable value here."""
+        listed = self.part.values.values() if metric is None else [self.part.values.get(metric, ())]
+        return any(is_usable(value) for values in listed for value in values)
 
     @property
     def bars_cue_free(self) -> bool:
@@ -53,14 +78,14 @@ class Use:
     """Index of its first step in the visit."""
     last: int
 
-    @property
-    def values_by_metric(self) -> dict[str, tuple[AttemptValue, ...]]:
-        """Return the attempts made under the cue, per metric."""
-        merged: dict[str, tuple[AttemptValue, ...]] = {}
-        for step in self.steps:
-            for metric, values in step.part.values.items():
-                merged[metric] = merged.get(metric, ()) + values
-        return merged
+    def list_values(self, metric: str) -> tuple[AttemptValue, ...]:
+        """Return the attempts made under the cue, of one metric and the key of its first step."""
+        return tuple(
+            value
+            for step in self.steps
+            if step.is_comparable_to(self.steps[0])
+            for value in step.part.values.get(metric, ())
+        )
 
 
 @dataclass(frozen=True, slots=True)
@@ -87,7 +112,7 @@ class Visit:
 
 def make_task_key(block: LoggedBlock) -> TaskKey:
     """Return what must be equal for two blocks to be of the same task."""
-    return block.task, tuple(sorted(block.conditions))
+    return block.task, tuple(sorted(fact for fact in block.conditions if fact[0] in TASK_FACTS))
 
 
 def is_same_tempo(one: float | None, other: float | None) -> bool:
@@ -111,11 +136,11 @@ def list_steps(session: LoggedSession, learner: str) -> Iterator[Step]:
     """Yield a learner's blocks of a session in order; only those they were present in."""
     for block in sorted(session.blocks, key=lambda block: block.number):
         for part in block.participations:
-            if part.learner == learner and part.presence == "present" and not _declined(part):
+            if part.learner == learner and part.presence == "present" and not has_declined(part):
                 yield Step(classify(block), block, part)
 
 
-def _declined(part: LoggedParticipation) -> bool:
+def has_declined(part: LoggedParticipation) -> bool:
     """Return whether the learner declined before starting, which is not a use."""
     return (
         part.reaction == "declined"
@@ -157,6 +182,7 @@ def _build_uses(
     is_after_stop = False
     for index, step in enumerate(steps):
         if not step.is_use:
+            is_after_stop = is_after_stop or step.part.is_stopped
             continue
         last = uses[-1] if uses else None
         if last is not None and _is_continued(last, step, steps[last.last + 1 : index]):
@@ -186,7 +212,7 @@ def _build_uses(
 
 def _is_continued(last: Use, step: Step, between: list[Step]) -> bool:
     """Return whether a step goes on with the cue of the use before it."""
-    is_measured = any(other.kind == CLEAN and any(other.part.values.values()) for other in between)
+    is_measured = any(other.kind == CLEAN and other.has_usable() for other in between)
     return (
         last.record.cue == step.block.cue
         and not is_measured
@@ -204,6 +230,7 @@ def _make_use(
     seed: UseRecord,
     t: int,
 ) -> Use:
+    """Make the use of some steps: of several, what was done adds up and the worst mark stays."""
     block = steps[0].block
     flags = list(seed.flags)
     if any(step.block.others in {"some", "unknown"} for step in steps):
@@ -229,7 +256,7 @@ def _make_use(
         assigned=block.assigned,
         randomised=all(step.block.is_randomised for step in steps),
         chosen=block.chosen,
-        others="many" if any(step.block.others == "many" for step in steps) else block.others,
+        others=max((step.block.others for step in steps), key=_OTHERS.index),
         stop_reason=next((s.part.stop_reason for s in steps if s.part.is_stopped), None),
         flags=tuple(dict.fromkeys(flags)),
     )

@@ -2,156 +2,174 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from datetime import timedelta
 
-from cuebook.practice.changes import Change, ChangeKey, NoChange
+from cuebook.practice.changes import Change, NoChange
 from cuebook.practice.log import TRANSFER
-from cuebook.practice.timeline import CLEAN, TaskKey, Use, Visit, is_same_tempo
-from cuebook.practice.visit_sets import MetricView, PlacedSet, get_set
+from cuebook.practice.timeline import CLEAN, Step, Use, Visit
+from cuebook.practice.visit_sets import MetricView, PlacedSet, get_set, join_flags, make_key
+from cuebook.practice.within import NO_VALUES, STOPPED
 
+TRANSFER_CONTRASTS = ("transfer", "transfer_later")
 WINDOW = timedelta(days=28)
 NO_TRANSFER = "no_transfer_measure"
 NEVER_MEASURED = "never_measured_there_before"
 OTHER_OCCASION = "measured_on_the_other_occasion"
-STOPPED = "stopped"
 
 
 @dataclass(frozen=True, slots=True)
-class _Place:
-    """A block of a visit, in the order of the learner's whole practice."""
+class Moment:
+    """A block of a visit, in its place in the whole of a learner's practice."""
 
     visit: Visit
     place: int
 
     @property
-    def order(self) -> tuple[object, ...]:
-        step = self.visit.steps[self.place]
-        return (self.visit.started_at, self.visit.session.session, step.block.number)
+    def step(self) -> Step:
+        """Return the block as the learner went through it."""
+        return self.visit.steps[self.place]
+
+    def is_same_session(self, visit: Visit) -> bool:
+        """Return whether it lies in the session of a visit."""
+        return self.visit.session.session == visit.session.session
+
+
+def list_moments(visits: Iterable[Sequence[Visit]]) -> tuple[Moment, ...]:
+    """Return a learner's blocks of all tasks by start of session, then block number."""
+    moments = (
+        Moment(visit, place)
+        for of_task in visits
+        for visit in of_task
+        for place in range(len(visit.steps))
+    )
+    return tuple(
+        sorted(
+            moments,
+            key=lambda one: (
+                one.visit.started_at,
+                one.visit.session.session,
+                one.step.block.number,
+                one.step.block.block,
+            ),
+        )
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class _Measure:
+    """A transfer measure: where it was made and its set."""
+
+    moment: Moment
+    placed: PlacedSet
 
 
 def derive_transfers(
-    visits: Mapping[TaskKey, Sequence[Visit]],
-    visit: Visit,
-    use: Use,
-    view: MetricView,
-    recipe: str,
+    moments: Sequence[Moment], visit: Visit, use: Use, view: MetricView
 ) -> dict[str, Change | NoChange]:
-    """Return same-day and later-day transfer of one use: two contrasts, at most one change."""
-    contrasts = ("transfer", "transfer_later")
+    """Return same-day and later-day transfer of one use.
+
+    Of several transfer keys on one occasion the first that has a before counts.
+
+    Parameters
+    ----------
+    moments : the learner's blocks of all tasks in order.
+    visit, use : the use, and the visit it was made in.
+    view : the metric.
+    """
     if use.record.stop_reason is not None:
-        return {name: NoChange(use.record, name, STOPPED) for name in contrasts}
-    found = _find_transfer(visits, visit, use, view, recipe)
-    if found is None:
-        return {name: NoChange(use.record, name, NO_TRANSFER) for name in contrasts}
-    after, placed = found
-    occasion = (
-        "transfer" if after.visit.session.session == visit.session.session else "transfer_later"
-    )
-    before = _find_before(visits, visit, after, placed, view, recipe)
+        return _refuse(use, STOPPED)
+    measured: dict[str, list[_Measure]] = {}
+    for measure in _iterate_transfers(moments, visit, use, view):
+        measured.setdefault(_name_occasion(visit, measure.moment.visit), []).append(measure)
+    if not measured:
+        is_measured = any(step.has_usable(view.metric) for step in visit.steps)
+        return _refuse(use, NO_TRANSFER if is_measured else NO_VALUES)
     answers: dict[str, Change | NoChange] = {}
-    for name in contrasts:
-        if name != occasion:
-            answers[name] = NoChange(use.record, name, OTHER_OCCASION)
-        elif before is None:
-            answers[name] = NoChange(use.record, name, NEVER_MEASURED)
-        else:
-            task, conditions = after.visit.task
-            tempo = placed.step.block.tempo
-            key = ChangeKey(
-                view.metric, recipe, task, conditions, None if tempo is None else f"{tempo:g}"
-            )
-            flags = (*use.record.flags, *before.made.flags, *placed.made.flags)
-            answers[name] = Change(
-                use.record,
-                name,
-                key,
-                before.made.attempts,
-                placed.made.attempts,
-                days=(after.visit.started_at - visit.started_at) / timedelta(days=1),
-                flags=tuple(dict.fromkeys(flags)),
-            )
+    for name in TRANSFER_CONTRASTS:
+        reason = NEVER_MEASURED if name in measured else OTHER_OCCASION
+        answers[name] = NoChange(use.record, name, reason)
+        for after in measured.get(name, ()):
+            before = _find_before(moments, visit, use, after, view)
+            if before is not None:
+                answers[name] = _make_change(name, visit, use, before, after, view)
+                break
     return answers
 
 
-def _walk(visits: Mapping[TaskKey, Sequence[Visit]]) -> list[_Place]:
-    places = [
-        _Place(visit, place)
-        for of_task in visits.values()
-        for visit in of_task
-        for place in range(len(visit.steps))
-    ]
-    return sorted(places, key=lambda place: (*map(str, place.order[:2]), place.order[2]))
+def _refuse(use: Use, reason: str) -> dict[str, Change | NoChange]:
+    return {name: NoChange(use.record, name, reason) for name in TRANSFER_CONTRASTS}
 
 
-def _iterate_after(
-    visits: Mapping[TaskKey, Sequence[Visit]], visit: Visit, use: Use
-) -> Iterator[_Place]:
-    start = _Place(visit, use.last).order
-    for place in _walk(visits):
-        if place.order > start and place.visit.started_at - visit.started_at <= WINDOW:
-            yield place
+def _name_occasion(visit: Visit, later: Visit) -> str:
+    is_same_day = later.started_at.date() == visit.started_at.date()
+    is_same_session = later.session.session == visit.session.session
+    return "transfer" if is_same_session or is_same_day else "transfer_later"
 
 
-def _find_transfer(
-    visits: Mapping[TaskKey, Sequence[Visit]],
-    visit: Visit,
-    use: Use,
-    view: MetricView,
-    recipe: str,
-) -> tuple[_Place, PlacedSet] | None:
-    """Return the first clean transfer set after a use, before another cue on either task."""
-    barred: set[TaskKey] = set()
-    for place in _iterate_after(visits, visit, use):
-        step = place.visit.steps[place.place]
-        if step.kind != CLEAN:
-            # Practice, with or without a cue, ends what this use alone can be credited with.
-            barred.add(place.visit.task)
-            if place.visit.task == visit.task:
-                return None
+def _make_change(
+    contrast: str, visit: Visit, use: Use, before: PlacedSet, after: _Measure, view: MetricView
+) -> Change:
+    return Change(
+        use.record,
+        contrast,
+        make_key(view, after.placed.step),
+        before.made.attempts,
+        after.placed.made.attempts,
+        days=(after.moment.visit.started_at - visit.started_at) / timedelta(days=1),
+        flags=join_flags(use.record.flags, before.made.flags, after.placed.made.flags),
+    )
+
+
+def _find_index(moments: Sequence[Moment], visit: Visit, place: int) -> int:
+    step = visit.steps[place]
+    return next(index for index, one in enumerate(moments) if one.step is step)
+
+
+def _iterate_transfers(
+    moments: Sequence[Moment], visit: Visit, use: Use, view: MetricView
+) -> Iterator[_Measure]:
+    """Yield the first clean transfer set after a use in each other key and on each occasion.
+
+    Any other practice, with or without a cue and on whichever task, ends what this use alone
+    can be credited with.
+    """
+    seen: list[tuple[str, Step]] = []
+    for moment in moments[_find_index(moments, visit, use.last) + 1 :]:
+        step = moment.step
+        if step.kind != CLEAN or moment.visit.started_at - visit.started_at > WINDOW:
+            return
+        if step.block.phase != TRANSFER or step.is_comparable_to(use.steps[0]):
             continue
-        if step.block.phase != TRANSFER or place.visit.task in barred:
+        occasion = _name_occasion(visit, moment.visit)
+        if any(name == occasion and step.is_comparable_to(other) for name, other in seen):
             continue
-        if place.visit.session.do_not_use:
-            continue
-        placed = get_set(place.visit, place.place, view, recipe)
+        placed = get_set(moment.visit, moment.place, view)
         if placed is not None:
-            return place, placed
-    return None
+            seen.append((occasion, step))
+            yield _Measure(moment, placed)
 
 
 def _find_before(
-    visits: Mapping[TaskKey, Sequence[Visit]],
-    visit: Visit,
-    after: _Place,
-    placed: PlacedSet,
-    view: MetricView,
-    recipe: str,
+    moments: Sequence[Moment], visit: Visit, use: Use, after: _Measure, view: MetricView
 ) -> PlacedSet | None:
-    """Return the latest clean set in the transfer key before any cue of the use's session."""
-    own_tasks = {visit.task, after.visit.task}
+    """Return the latest clean set in the transfer key before any cue of the use's session.
+
+    None too if another cue of that session came before this use: the measure would stand before
+    both, and its change could not be told apart. For practice alone practice is what bars.
+    """
+    own_tasks = {visit.task, after.moment.visit.task}
     best: PlacedSet | None = None
-    for place in _walk(visits):
-        if place.order >= after.order:
-            break
-        step = place.visit.steps[place.place]
-        is_same_session = place.visit.session.session == visit.session.session
-        if place.visit.started_at > visit.started_at and not is_same_session:
-            break
-        if step.bars_cue_free and place.visit.task in own_tasks:
-            if is_same_session:
-                break
-            best = None  # a cue on either task came between
-            continue
-        if (
-            place.visit.task != after.visit.task
-            or step.kind != CLEAN
-            or place.visit.session.do_not_use
-            or visit.started_at - place.visit.started_at > WINDOW
-            or not is_same_tempo(step.block.tempo, placed.step.block.tempo)
+    for moment in moments[: _find_index(moments, visit, use.first)]:
+        step = moment.step
+        if step.bars_cue_free or (use.record.cue is None and step.is_use):
+            if moment.is_same_session(visit):
+                return None
+            if moment.visit.task in own_tasks:
+                best = None
+        elif visit.started_at - moment.visit.started_at <= WINDOW and step.is_comparable_to(
+            after.placed.step
         ):
-            continue
-        found = get_set(place.visit, place.place, view, recipe)
-        best = found or best
+            best = get_set(moment.visit, moment.place, view) or best
     return best

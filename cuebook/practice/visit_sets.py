@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterable
 from dataclasses import dataclass
 
 from cuebook.practice.changes import ChangeKey
 from cuebook.practice.log import BASELINE
 from cuebook.practice.scales import AttemptScale
 from cuebook.practice.sets import FlaggedSet, build_set
-from cuebook.practice.timeline import CLEAN, Step, Use, Visit, is_same_tempo
+from cuebook.practice.timeline import CLEAN, Step, Use, Visit
 
 
 @dataclass(frozen=True, slots=True)
@@ -24,10 +24,11 @@ class PlacedSet:
 
 @dataclass(frozen=True, slots=True)
 class MetricView:
-    """A metric as the derivation looks at it."""
+    """A metric, made by one recipe, as the derivation looks at it."""
 
     metric: str
     scale: AttemptScale
+    recipe: str = ""
     drop_first: bool = False
 
 
@@ -42,18 +43,31 @@ def list_recipes(visits: Iterable[Visit], metric: str) -> tuple[str, ...]:
     return tuple(sorted(seen)) or ("",)
 
 
-def make_key(visit: Visit, view: MetricView, recipe: str, tempo: float | None) -> ChangeKey:
-    """Return the key of a comparison."""
-    task, conditions = visit.task
-    return ChangeKey(view.metric, recipe, task, conditions, None if tempo is None else f"{tempo:g}")
+def make_key(view: MetricView, step: Step) -> ChangeKey:
+    """Return the key of a comparison that a step stands in."""
+    tempo = step.block.tempo
+    return ChangeKey(
+        view.metric,
+        view.recipe,
+        step.block.task,
+        step.conditions,
+        None if tempo is None else f"{tempo:g}",
+    )
 
 
-def get_set(visit: Visit, place: int, view: MetricView, recipe: str) -> PlacedSet | None:
-    """Return the set made in one block of a visit, if it has a usable value."""
+def join_flags(*lists: Iterable[str]) -> tuple[str, ...]:
+    """Return flags in the order met, each once."""
+    return tuple(dict.fromkeys(flag for flags in lists for flag in flags))
+
+
+def get_set(visit: Visit, place: int, view: MetricView) -> PlacedSet | None:
+    """Return the clean set made in one block of a visit, if it is clean and has a usable value."""
     step = visit.steps[place]
+    if step.kind != CLEAN or visit.session.do_not_use:
+        return None
     made = build_set(
         step.part.values.get(view.metric, ()),
-        recipe,
+        view.recipe,
         view.scale,
         drop_first=view.drop_first and place == _find_first_measured(visit),
     )
@@ -68,72 +82,55 @@ def _find_first_measured(visit: Visit) -> int | None:
     return None
 
 
-def list_clean_sets(
-    visit: Visit, places: range, view: MetricView, recipe: str, tempo: float | None
-) -> Iterator[PlacedSet]:
-    """Yield the clean sets of some blocks of a visit at one tempo, in order."""
-    if visit.session.do_not_use:
-        return
-    for place in places:
-        step = visit.steps[place]
-        if step.kind != CLEAN or not is_same_tempo(step.block.tempo, tempo):
-            continue
-        placed = get_set(visit, place, view, recipe)
-        if placed is not None:
-            yield placed
+def list_sets(
+    visit: Visit, places: range, view: MetricView, like: Step | None = None
+) -> list[PlacedSet]:
+    """Return the clean sets of some blocks of a visit in order, all comparable to one step."""
+    found = (
+        get_set(visit, place, view)
+        for place in places
+        if like is None or visit.steps[place].is_comparable_to(like)
+    )
+    return [placed for placed in found if placed is not None]
 
 
-def find_before(visit: Visit, use: Use, view: MetricView, recipe: str) -> PlacedSet | None:
+def find_before(visit: Visit, use: Use, view: MetricView) -> PlacedSet | None:
     """Return the fresh before of a use: the last clean set since the use before it ended.
 
     Of several the one labelled baseline, else the latest; they are not pooled, and there is no
     reaching back.
     """
-    start = _find_end_of_last_practice(visit, use.first)
-    tempo = use.steps[0].block.tempo
-    sets = list(list_clean_sets(visit, range(start, use.first), view, recipe, tempo))
-    if not sets:
-        return None
+    start = use.first
+    while start > 0 and visit.steps[start - 1].kind == CLEAN:
+        start -= 1
+    sets = list_sets(visit, range(start, use.first), view, use.steps[0])
     baselines = [placed for placed in sets if placed.step.block.phase == BASELINE]
-    return (baselines or sets)[-1]
+    picked = baselines or sets
+    return picked[-1] if picked else None
 
 
-def find_after(visit: Visit, use: Use, view: MetricView, recipe: str) -> PlacedSet | None:
+def find_after(visit: Visit, use: Use, view: MetricView) -> PlacedSet | None:
     """Return the first clean set after a use, before the next practice begins."""
-    end = _find_next_practice(visit, use.last + 1)
-    tempo = use.steps[0].block.tempo
-    return next(iter(list_clean_sets(visit, range(use.last + 1, end), view, recipe, tempo)), None)
+    end = use.last + 1
+    while end < len(visit.steps) and visit.steps[end].kind == CLEAN:
+        end += 1
+    sets = list_sets(visit, range(use.last + 1, end), view, use.steps[0])
+    return sets[0] if sets else None
 
 
-def find_opening(visit: Visit, view: MetricView, recipe: str) -> PlacedSet | None:
+def find_opening(
+    visit: Visit, view: MetricView, like: Step | None = None, *, is_after: bool = False
+) -> PlacedSet | None:
     """Return the opening set of a visit: its first clean set, made before any cue.
 
-    In a visit of practice alone it must stand before that practice.
+    As the before-set of a visit of practice alone it must stand before that practice too; as an
+    after-set (``is_after``) only a cue ends it, and it must be comparable to the before-set's step.
     """
+    ends_at_practice = not is_after and not visit.has_cue
     stop = len(visit.steps)
     for place, step in enumerate(visit.steps):
-        if step.bars_cue_free or (not visit.has_cue and step.is_use):
+        if step.bars_cue_free or (ends_at_practice and step.is_use):
             stop = place
             break
-    for place in range(stop):
-        step = visit.steps[place]
-        if step.kind != CLEAN or visit.session.do_not_use:
-            continue
-        placed = get_set(visit, place, view, recipe)
-        if placed is not None:
-            return placed
-    return None
-
-
-def _find_end_of_last_practice(visit: Visit, place: int) -> int:
-    for earlier in range(place - 1, -1, -1):
-        if visit.steps[earlier].kind != CLEAN:
-            return earlier + 1
-    return 0
-
-
-def _find_next_practice(visit: Visit, place: int) -> int:
-    for later in range(place, len(visit.steps)):
-        if visit.steps[later].kind != CLEAN:
-            return later
-    return len(visit.steps)
+    sets = list_sets(visit, range(stop), view, like)
+    return sets[0] if sets else None

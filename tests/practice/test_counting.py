@@ -2,19 +2,23 @@
 
 from __future__ import annotations
 
+from collections import defaultdict
 from dataclasses import replace
 from datetime import timedelta
+from itertools import count, pairwise
 
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 from support.practice_logs import (
     METRIC,
     SCALE,
     START,
+    attempt,
     block,
     count_answers,
     list_changes,
     make_log,
+    visit,
 )
 
 from cuebook.practice.derive import derive_changes
@@ -43,6 +47,7 @@ def draw_block(draw: st.DrawFn, name: str, number: int) -> LoggedBlock:
         task=draw(st.sampled_from(["reaching", "reaching", "wiping"])),
         others=draw(st.sampled_from(["none", "none", "none", "some", "many", "unknown"])),
         tempo=draw(st.sampled_from([None, None, 60.0, 63.0, 90.0])),
+        conditions=draw(st.sampled_from([(), (), (("side", "left"),), (("place", "outdoors"),)])),
         event=draw(st.sampled_from([None, "monday:1"])),
     )
 
@@ -121,8 +126,6 @@ def test_learners_without_consent_change_nothing(log: PracticeLog) -> None:
 
 def test_an_invalid_attempt_is_no_value() -> None:
     """What the user marked invalid, or was made after a stop, is not used."""
-    from support.practice_logs import attempt, visit  # noqa: PLC0415
-
     session = visit("b A o")
     part = session.blocks[2].participations[0]
     spoiled = replace(
@@ -132,3 +135,59 @@ def test_an_invalid_attempt_is_no_value() -> None:
     blocks = (*session.blocks[:2], replace(session.blocks[2], participations=(spoiled,)))
     derived = derive_changes(make_log(replace(session, blocks=blocks)), METRIC, SCALE)
     assert list_changes(derived, "immediate") == {}
+
+
+def number_values(log: PracticeLog) -> PracticeLog:
+    """Replace every measured block's values by one: its place in time, which then names the set."""
+    places = count(1)
+    sessions = []
+    for session in sorted(log.sessions, key=lambda one: one.started_at):
+        blocks = []
+        for one in sorted(session.blocks, key=lambda one: one.number):
+            place = float(next(places))
+            parts = tuple(
+                replace(part, values={METRIC: (attempt(place),)}) if part.values else part
+                for part in one.participations
+            )
+            blocks.append(replace(one, participations=parts))
+        sessions.append(replace(session, blocks=tuple(blocks)))
+    return PracticeLog(log.learners, tuple(sessions))
+
+
+@settings(max_examples=400)
+@given(draw_log())
+def test_intervals_of_one_contrast_never_overlap(log: PracticeLog) -> None:
+    """From before to after, changes of one learner, contrast and key may touch, never overlap."""
+    derived = derive_changes(number_values(log), METRIC, SCALE)
+    spans = defaultdict(list)
+    for change in derived.changes:
+        assert change.before.mean < change.after.mean
+        named = (change.use.learner, change.contrast, change.key)
+        spans[named].append((change.before.mean, change.after.mean))
+    for listed in spans.values():
+        for (_, ended), (began, _) in pairwise(sorted(listed)):
+            assert ended <= began
+
+
+@given(draw_log())
+def test_uses_are_met_once_and_k_counts_up(log: PracticeLog) -> None:
+    """Every use has an own name, and k is 1, 2, … within learner, session, task, side and aid."""
+    uses = derive_changes(log, METRIC, SCALE).uses
+    assert len({use.use for use in uses}) == len(uses)
+    sides = {one.block: one.conditions for session in log.sessions for one in session.blocks}
+    runs = defaultdict(list)
+    for use in uses:
+        side = dict(sides[use.use.partition(":")[0]]).get("side")
+        runs[use.learner, use.session, use.task, side].append(use.k)
+    for ks in runs.values():
+        assert ks == list(range(1, len(ks) + 1))
+
+
+@given(draw_log())
+def test_a_use_that_is_stopped_changes_nothing(log: PracticeLog) -> None:
+    """No change of any contrast comes from a stopped use, and each stop is counted as a harm."""
+    derived = derive_changes(log, METRIC, SCALE)
+    assert not any(change.use.stop_reason for change in derived.changes)
+    stopped = sum(use.stop_reason is not None for use in derived.uses)
+    assert stopped == sum(sum(tally.stops.values()) for tally in derived.harms.values())
+    assert len(derived.uses) == sum(tally.uses for tally in derived.harms.values())
