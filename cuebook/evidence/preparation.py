@@ -21,7 +21,7 @@ from cuebook.evidence.prepared import (
     Tally,
 )
 from cuebook.evidence.reference import check_reference
-from cuebook.practice.changes import AttemptSet, Change, NoChange, UseRecord
+from cuebook.practice.changes import AttemptSet, Change, ChangeKey, NoChange, UseRecord
 
 __all__ = ["MissingRows", "Moments", "PreparedUses", "ReferenceCheck", "Tally", "prepare_uses"]
 
@@ -162,6 +162,9 @@ class _State:
         self.vw = math.nan
         self.mean_before = math.nan
         self.learner_means: dict[str, float] = {}
+        self.visit_means: dict[str, float] = {}
+        """Of ln(1 + visit)."""
+        self.attempt_variance: Mapping[str, float] = {}
         self.slope = 0.0
         self.is_split = True
         """Whether day and person can be told apart."""
@@ -221,10 +224,13 @@ def _build_state(changes: Sequence[Change], contrast: str, borrowed: BorrowedVar
     means = np.bincount(codes, before) / sizes
     grand = float(np.mean(before))
     state.learner_means = {learners[i]: float(means[codes[i]]) for i in range(n)}
+    visit_means = np.bincount(codes, visit) / sizes
+    state.visit_means = {learners[i]: float(visit_means[codes[i]]) for i in range(n)}
+    state.attempt_variance = borrowed.by_learner if borrowed.is_known else {}
     state.mean_before = grand
     state.level = means[codes] - grand
     own = before - means[codes]
-    visit_own = visit - (np.bincount(codes, visit) / sizes)[codes]
+    visit_own = visit - visit_means[codes]
     denominator = float(visit_own @ visit_own)
     state.slope = float(visit_own @ own) / denominator if denominator >= 1e-9 else 0.0
     distance = own - state.slope * visit_own
@@ -272,7 +278,7 @@ def _build_missing(
     ]
     if not known or not rows.change.size:
         return None
-    likely = [_suppose(one, state) for one in known]
+    likely = [_suppose(one) for one in known]
     all_rows = Rows.from_changes(
         likely,
         rows.learner_labels,
@@ -288,25 +294,31 @@ def _build_missing(
     )
 
 
-def _suppose(one: NoChange, state: _State) -> Change:
-    del state
+def _suppose(one: NoChange) -> Change:
+    """Return a use as a change of nothing, for the columns that do not depend on it."""
     before = one.before or AttemptSet(0.0, 1, 0.0)
-    if one.key is not None:
-        return Change(one.use, one.contrast, one.key, before, before)
-    from cuebook.practice.changes import ChangeKey  # noqa: PLC0415
-
-    return Change(one.use, one.contrast, ChangeKey("", "", one.use.task), before, before)
+    key = one.key or ChangeKey("", "", one.use.task)
+    return Change(one.use, one.contrast, key, before, before)
 
 
 def _place_state(one: NoChange, state: _State) -> float:
-    before = one.before.mean if one.before is not None else state.mean_before
+    """Return the covariate that a use would have had, by the rule of those with a change."""
+    if one.before is None:
+        return 0.0
     if not state.is_split:
-        return before - state.mean_before
-    distance = before - state.learner_means[one.use.learner]
-    if state.contrast not in WITHIN_SESSION or math.isnan(state.sx2):
+        return one.before.mean - state.mean_before
+    learner = one.use.learner
+    distance = one.before.mean - state.learner_means[learner]
+    if not state.attempt_variance:
         return distance
-    noise = max(state.vw - state.sx2, 0.0)
-    reliability = state.sx2 / (state.sx2 + noise) if state.sx2 > 0 else LEAST_RELIABILITY
+    distance -= state.slope * (math.log1p(one.use.t) - state.visit_means[learner])
+    if state.contrast not in WITHIN_SESSION:
+        return distance
+    noise = one.before.sampling_variance
+    if noise is None:
+        noise = state.attempt_variance[learner] / one.before.n
+    whole = state.sx2 + noise
+    reliability = state.sx2 / whole if whole > 0 else 1.0
     return (1.0 - min(max(reliability, LEAST_RELIABILITY), MOST_RELIABILITY)) * distance
 
 
