@@ -68,6 +68,9 @@ def cuebook(ctx: click.Context, location: str | None) -> None:
     Without a command the screens open. Every command takes --json and --library.
     """
     if ctx.invoked_subcommand is None:
+        if not (sys.stdin.isatty() and sys.stdout.isatty()):
+            click.echo(ctx.get_help())  # screens need a terminal; a script gets the list
+            return
         from cuebook.tui.app import run_app  # noqa: PLC0415
 
         run_app(location)

@@ -206,6 +206,7 @@ def erase_learner(location: Location, code: str, *, confirmed: bool) -> None:
         with library.transaction() as tx:
             unused = people.erase_learner(tx, people.get_learner(tx, code).id)
         drop_original_files(library.originals, unused)
+        library.scrub()
 
 
 def list_learners(location: Location) -> tuple[PersonLine, ...]:
