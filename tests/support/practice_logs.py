@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 from datetime import UTC, datetime, timedelta
 
-from cuebook.practice.changes import Change, Derived, NoChange
+from cuebook.practice.changes import CONTRASTS, Change, Derived, NoChange
 from cuebook.practice.derive import derive_changes
 from cuebook.practice.log import (
     AttemptValue,
@@ -107,7 +107,12 @@ def make_log(*sessions: LoggedSession, without_consent: Sequence[str] = ()) -> P
 
 def derive(*sessions: LoggedSession, **given: object) -> Derived:
     """Return what is derived from sessions."""
-    return derive_changes(make_log(*sessions), METRIC, SCALE, **given)  # type: ignore[arg-type]
+    return derive_log(make_log(*sessions), **given)
+
+
+def derive_log(log: PracticeLog, **given: object) -> Derived:
+    """Return what is derived from a log."""
+    return derive_changes(log, METRIC, SCALE, **given)  # type: ignore[arg-type]
 
 
 def list_changes(derived: Derived, contrast: str) -> dict[str | None, float]:
@@ -139,8 +144,6 @@ def find_change(derived: Derived, cue: str | None, contrast: str) -> Change:
 
 def count_answers(derived: Derived) -> dict[tuple[str, str], tuple[int, int]]:
     """Return for each use and contrast how many changes and how many reasons it has."""
-    from cuebook.practice.changes import CONTRASTS  # noqa: PLC0415
-
     counts = {(use.use, contrast): [0, 0] for use in derived.uses for contrast in CONTRASTS}
     answers: list[Change | NoChange] = [*derived.changes, *derived.without]
     for answer in answers:
