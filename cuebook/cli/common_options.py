@@ -7,6 +7,7 @@ from datetime import UTC, datetime
 from typing import Any, TypeVar
 
 import click
+from click.core import ParameterSource
 
 from cuebook.errors import UsageError
 
@@ -17,10 +18,10 @@ def _take_library(
     context: click.Context, _option: click.Parameter, value: str | None
 ) -> str | None:
     """Return the library named after the command, else the one named before it."""
-    if value is not None:
+    if context.get_parameter_source("location") is ParameterSource.COMMANDLINE:
         return value
     named: str | None = context.find_root().params.get("location")
-    return named
+    return named or value
 
 
 json_option = click.option("--json", "as_json", is_flag=True, help="Print one JSON document.")

@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from cuebook.errors import InputError, NeedsAnswerError, Place
+from cuebook.errors import InputError, Place
 from cuebook.recordings.dialect import (
     Dialect,
     detect_dialect,
@@ -89,12 +89,12 @@ def read_table(text: str, file: str) -> TextTable:
 
     Raises
     ------
-    NeedsAnswerError : nothing in it looks like rows of numbers.
+    InputError : nothing in it looks like rows of numbers.
     """
     lines = text.split("\n")
     dialect = detect_dialect(lines)
     if dialect is None:
-        raise NeedsAnswerError(
+        raise InputError(
             f"No table of numbers was found in {file}.",
             "Check that it is a recording, exported as text with one sample a line.",
             Place(file=file),

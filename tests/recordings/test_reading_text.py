@@ -102,7 +102,7 @@ def test_a_given_unit_wins_over_the_header() -> None:
         (b"  \n \n", InputError, "empty"),
         (b"\x89PNG\x00\x01\x02" * 20, InputError, "not a text file"),
         (b"\x1f\x8bdamaged", InputError, "damaged gzip"),
-        (b"hello there\nthis is prose\n", NeedsAnswerError, "No table of numbers"),
+        (b"hello there\nthis is prose\n", InputError, "No table of numbers"),
         (b"x_m,y_m\n1,2\n2,3\n3,4\n", NeedsAnswerError, "no column of time"),
         (b"1,2,3\n2,3,4\n3,4,5\n", NeedsAnswerError, "without names"),
         (b"time,x_m\n1,0.1\n2,0.2\n3,0.3\n", NeedsAnswerError, "counts samples"),
