@@ -21,6 +21,7 @@ from cuebook.evidence.prepared import (
     Tally,
 )
 from cuebook.evidence.reference import check_reference
+from cuebook.evidence.usual_level import UsualLevel, follow_openings
 from cuebook.practice.changes import AttemptSet, Change, ChangeKey, NoChange, UseRecord
 
 __all__ = ["MissingRows", "Moments", "PreparedUses", "ReferenceCheck", "Tally", "prepare_uses"]
@@ -29,6 +30,7 @@ WITHIN_SESSION = frozenset({"during", "immediate", "transfer"})
 FEWEST_REPEATS = 10
 """Degrees of freedom below which day and person cannot be told apart."""
 LEAST_RELIABILITY, MOST_RELIABILITY = 0.05, 0.98
+SINGLE_ATTEMPTS = "single attempts only: their noise is not known"
 _NO_BEFORE = frozenset({"no_before", "no_clean_between", "session_began_with_cue"})
 _NO_AFTER = frozenset(
     {"no_after", "no_values_during", "no_later_opening", "another_cue_between"}
@@ -58,8 +60,9 @@ def prepare_uses(
     -----
     The known variance of a change is v = s^2/n1 + r s^2/n0 within a session and s^2/n1 across
     days, where r is the reliability of the before-set; the covariate ``state`` is
-    (1 - r) times the before's distance from the learner's own mean within a session, and that
-    distance itself across days: regression to the mean.
+    (1 - r) times the before's distance from the learner's own mean within a session, and its
+    distance from the learner's usual level until then across days: regression to the mean. The
+    column ``level`` is the learner's mean, or across days the first opening, about its mean.
     """
     chosen, notes, refused = _choose(changes, contrast)
     gone = [one for one in without if one.contrast == contrast]
@@ -164,6 +167,9 @@ class _State:
         self.learner_means: dict[str, float] = {}
         self.visit_means: dict[str, float] = {}
         """Of ln(1 + visit)."""
+        self.level_of: dict[str, float] = {}
+        self.usual: dict[str, UsualLevel] = {}
+        """Empty within a session."""
         self.attempt_variance: Mapping[str, float] = {}
         self.slope = 0.0
         self.is_split = True
@@ -229,6 +235,7 @@ def _build_state(changes: Sequence[Change], contrast: str, borrowed: BorrowedVar
     state.attempt_variance = borrowed.by_learner if borrowed.is_known else {}
     state.mean_before = grand
     state.level = means[codes] - grand
+    state.level_of = dict(zip(learners, state.level.tolist(), strict=True))
     own = before - means[codes]
     visit_own = visit - visit_means[codes]
     denominator = float(visit_own @ visit_own)
@@ -242,21 +249,40 @@ def _build_state(changes: Sequence[Change], contrast: str, borrowed: BorrowedVar
         state.note = "too few repeated visits to separate day from person"
         return state
     state.vw = float(distance @ distance) / repeats
+    if contrast not in WITHIN_SESSION:
+        state.variance = after_variance
+        _follow_days(state, changes, before)
+        if borrowed.is_known:
+            state.sx2 = _estimate_state_variance(state.vw, before_variance)
+        else:
+            state.note = SINGLE_ATTEMPTS
+        return state
     if not borrowed.is_known:
         state.covariate = own
-        state.note = "single attempts only: their noise is not known"
+        state.note = SINGLE_ATTEMPTS
         return state
-    state.sx2 = max(state.vw - float(np.mean(before_variance)), 0.05 * state.vw)
-    if contrast not in WITHIN_SESSION:
-        state.covariate = distance
-        state.variance = after_variance
-        return state
+    state.sx2 = _estimate_state_variance(state.vw, before_variance)
     with np.errstate(invalid="ignore", divide="ignore"):
         reliability = state.sx2 / (state.sx2 + before_variance)
     reliability = np.clip(np.nan_to_num(reliability, nan=1.0), LEAST_RELIABILITY, MOST_RELIABILITY)
     state.covariate = (1.0 - reliability) * distance
     state.variance = after_variance + reliability * before_variance
     return state
+
+
+def _follow_days(state: _State, changes: Sequence[Change], before: FloatArray) -> None:
+    """Place each opening against what was usual until then; the first one is the level."""
+    learners = [change.use.learner for change in changes]
+    visits = [change.use.t for change in changes]
+    state.covariate, state.usual = follow_openings(learners, visits, before)
+    first = np.array([state.usual[learner].first for learner in learners])
+    state.level = first - first.mean()
+    state.level_of = dict(zip(learners, state.level.tolist(), strict=True))
+
+
+def _estimate_state_variance(whole: float, before_variance: FloatArray) -> float:
+    """Return the variance of the true state within learners: the whole without attempt noise."""
+    return max(whole - float(np.mean(before_variance)), 0.05 * whole)
 
 
 def _build_missing(
@@ -285,7 +311,7 @@ def _build_missing(
         cues,
         np.zeros(len(likely)),
         np.array([_place_state(one, state) for one in known]),
-        np.array([state.learner_means[one.use.learner] - state.mean_before for one in known]),
+        np.array([state.level_of[one.use.learner] for one in known]),
     )
     design, names = build_columns(all_rows, state.contrast, cues, kind_of, centred_on=rows)
     picked = [names.index(name) for name in columns]
@@ -308,12 +334,12 @@ def _place_state(one: NoChange, state: _State) -> float:
     if not state.is_split:
         return one.before.mean - state.mean_before
     learner = one.use.learner
+    if state.usual:
+        return one.before.mean - state.usual[learner].find(one.use.t)
     distance = one.before.mean - state.learner_means[learner]
     if not state.attempt_variance:
         return distance
     distance -= state.slope * (math.log1p(one.use.t) - state.visit_means[learner])
-    if state.contrast not in WITHIN_SESSION:
-        return distance
     noise = one.before.sampling_variance
     if noise is None:
         noise = state.attempt_variance[learner] / one.before.n

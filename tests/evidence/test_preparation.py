@@ -9,6 +9,7 @@ from dataclasses import replace
 import numpy as np
 import pytest
 from support.simulated_libraries import Scenario, simulate_library
+from support.simulated_occasions import RetentionScenario, simulate_retention
 
 from cuebook.evidence.arrays import FloatArray
 from cuebook.evidence.preparation import prepare_uses
@@ -83,8 +84,8 @@ def test_within_a_session_variance_and_state_follow_their_formulas() -> None:
     assert prepared.change == pytest.approx([change.difference for change in changes])
 
 
-def test_across_days_the_state_is_the_distance_itself() -> None:
-    """Yesterday's form is gone: the covariate is zc and only the after's noise is known."""
+def test_across_days_the_state_is_the_distance_from_what_was_usual() -> None:
+    """Half-way to each earlier opening; only the after's noise is known; level: first opening."""
     changes = [
         replace(change, contrast="retention", days=2.0 + at % 5)
         for at, change in enumerate(make_changes())
@@ -92,8 +93,16 @@ def test_across_days_the_state_is_the_distance_itself() -> None:
     prepared = prepare_uses(changes, contrast="retention")
     s2 = np.array([prepared.moments.s2_learner[change.use.learner] for change in changes])
     assert prepared.variance == pytest.approx(s2 / [change.after.n for change in changes])
+    openings = np.array([change.before.mean for change in changes]).reshape(4, 6)
+    usual = openings[:, 0].copy()
+    expected = np.zeros((4, 6))
+    for visit in range(6):
+        expected[:, visit] = openings[:, visit] - usual
+        usual = (usual + openings[:, visit]) / 2
     state = prepared.design[:, prepared.columns.index("state")]
-    assert state == pytest.approx(detrend(changes))
+    assert state == pytest.approx(expected.ravel())
+    level = prepared.design[:, prepared.columns.index("level")]
+    assert level == pytest.approx((openings[:, 0] - openings[:, 0].mean()).repeat(6))
     days = np.log(1.0 + np.array([change.days for change in changes]))
     column = prepared.design[:, prepared.columns.index("log_days")]
     assert column == pytest.approx(days - days.mean())
@@ -274,3 +283,54 @@ def test_nothing_at_all_is_prepared_without_a_crash() -> None:
     assert prepared.change.size == 0
     assert not prepared.reference.is_shown
     assert prepared.missing is None
+
+
+def test_a_later_opening_does_not_reach_back() -> None:
+    """Across days, what happens at the last visit leaves the states of all earlier ones alone."""
+    changes = [replace(one, contrast="retention", days=3.0) for one in make_changes()]
+    other = list(changes)
+    other[5] = replace(other[5], before=replace(other[5].before, mean=40.0))
+    one, moved = (prepare_uses(own, contrast="retention") for own in (changes, other))
+    at = one.columns.index("state")
+    assert moved.design[:5, at] == pytest.approx(one.design[:5, at])
+    assert moved.design[5, at] > one.design[5, at] + 10
+
+
+def test_two_changes_from_one_opening_have_one_state() -> None:
+    """Rows of the same visit start from the same opening: it is counted once."""
+    changes = [replace(one, contrast="transfer_later", days=3.0) for one in make_changes()]
+    twin = replace(changes[2], use=replace(changes[2].use, use="twin", k=2))
+    prepared = prepare_uses([*changes, twin], contrast="transfer_later")
+    at = prepared.columns.index("state")
+    assert prepared.design[2, at] == pytest.approx(prepared.design[3, at])
+
+
+def test_a_missing_retention_has_the_state_of_its_visit() -> None:
+    """A visit whose next opening never came is placed against what was usual by then."""
+    changes = [replace(one, contrast="retention", days=3.0) for one in make_changes()]
+    prepared = prepare_uses(
+        changes, contrast="retention", without=[drop_after(changes[9], "no_after")]
+    )
+    missing = prepared.missing
+    assert missing is not None
+    for name in ("state", "level"):
+        at = prepared.columns.index(name)
+        assert missing.design[0, at] == pytest.approx(prepared.design[9, at])
+
+
+def test_intervals_of_retention_cover_the_truth() -> None:
+    """In ten chains of visits at least nine in ten 95 % intervals hold the true effect."""
+    covered = []
+    for seed in range(1, 11):
+        library = simulate_retention(seed, RetentionScenario())
+        ranking = rank_cues(
+            prepare_uses(library.changes, contrast="retention"),
+            ReviewQuestion(metric="m", contrast="retention", allowance=0.0),
+        )
+        assert ranking.reference == "practice_alone"
+        covered += [
+            cue.interval.low95 <= library.truth[cue.cue] <= cue.interval.high95
+            for cue in ranking.cues
+        ]
+    assert len(covered) == 150
+    assert sum(covered) / len(covered) >= 0.91
