@@ -6,6 +6,8 @@ import re
 from collections import Counter
 from dataclasses import dataclass
 
+from cuebook.recordings.units import is_unit
+
 DELIMITERS = ("\t", ";", ",", "|", " ")
 _MISSING = frozenset({"", "nan", "n/a", "na", "null", "none", "inf", "-inf", "-"})
 _NUMBER = {
@@ -129,6 +131,4 @@ def _find_header(
 
 
 def _looks_like_unit(cell: str) -> bool:
-    from cuebook.recordings.units import is_unit  # noqa: PLC0415
-
     return is_unit(cell.strip("()[]"))

@@ -6,12 +6,11 @@ from collections.abc import Mapping
 
 import numpy as np
 
-from cuebook.errors import InputError, NeedsAnswerError, Place
+from cuebook.errors import InputError, Place
 from cuebook.recordings.channels import EVENT_CHANNELS, describe_event_column, split_unit
 from cuebook.recordings.recording import FloatArray, ReadingOptions, Recording
 from cuebook.recordings.tables import TextTable
 from cuebook.recordings.units import require_factor
-from cuebook.vocabulary import find_nearest
 
 KIND_COLUMN = "trial_type"
 
@@ -22,7 +21,7 @@ def find_event_columns(
     """Return which columns hold events; empty if the file is no list of events."""
     if rule.columns:
         named = {name: wanted for name, wanted in rule.columns.items() if name in EVENT_CHANNELS}
-        return {name: _find(table, wanted) for name, wanted in named.items()}
+        return {name: table.find_column(wanted) for name, wanted in named.items()}
     if table.has_header:
         found = {
             kind: column
@@ -34,19 +33,6 @@ def find_event_columns(
     if expects_events and len(table.names) == 1:
         return {"onset": 0}
     return {}
-
-
-def _find(table: TextTable, wanted: str) -> int:
-    if wanted in table.names:
-        return table.names.index(wanted)
-    if wanted.isdigit() and 1 <= int(wanted) <= len(table.names):
-        return int(wanted) - 1
-    nearest = find_nearest(wanted, table.names)
-    raise NeedsAnswerError(
-        f"{table.file} has no column '{wanted}'.",
-        f"Nearest: {', '.join(nearest)}." if nearest else "Give its number.",
-        Place(file=table.file),
-    )
 
 
 def read_events(

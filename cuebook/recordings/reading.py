@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from cuebook.errors import InputError, NeedsAnswerError, Place, UsageError
+from cuebook.errors import InputError, NeedsAnswerError, Place
 from cuebook.recordings.channels import TIME, Channel, describe_column, name_channel
 from cuebook.recordings.event_lists import find_event_columns, read_events
 from cuebook.recordings.recording import UNKNOWN, FloatArray, ReadingOptions, Recording, Signal
@@ -15,7 +15,6 @@ from cuebook.recordings.tables import TextTable, read_table
 from cuebook.recordings.text_files import decode_text, read_bytes
 from cuebook.recordings.time_axis import TimeAxis, build_uniform, read_stamps
 from cuebook.recordings.units import KIND_OF_QUANTITY, require_factor, tidy_unit
-from cuebook.vocabulary import find_nearest
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -92,8 +91,7 @@ def _find_channels(table: TextTable, rule: ReadingOptions, file: str) -> list[Ch
         return [
             name_channel(channel, column, table.names[column])
             for channel, column in (
-                (channel, find_column(table, wanted, file))
-                for channel, wanted in rule.columns.items()
+                (channel, table.find_column(wanted)) for channel, wanted in rule.columns.items()
             )
         ]
     if not table.has_header:
@@ -121,24 +119,6 @@ def _find_channels(table: TextTable, rule: ReadingOptions, file: str) -> list[Ch
             Place(file=file),
         )
     return kept
-
-
-def find_column(table: TextTable, wanted: str, file: str) -> int:
-    """Return the index of a column given by its name or its number from 1.
-
-    Raises
-    ------
-    UsageError : there is none; the nearest name is named.
-    """
-    if wanted in table.names:
-        return table.names.index(wanted)
-    if wanted.isdigit() and 1 <= int(wanted) <= len(table.names):
-        return int(wanted) - 1
-    nearest = find_nearest(wanted, table.names) if table.has_header else ()
-    hint = f"Nearest: {', '.join(nearest)}." if nearest else ""
-    raise UsageError(
-        f"{file} has no column '{wanted}' (it has {len(table.names)}).", hint, Place(file=file)
-    )
 
 
 def _build_time(

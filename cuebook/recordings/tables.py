@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from cuebook.errors import InputError, Place
+from cuebook.errors import InputError, Place, UsageError
 from cuebook.recordings.dialect import (
     Dialect,
     detect_dialect,
@@ -17,6 +17,7 @@ from cuebook.recordings.dialect import (
     split_line,
 )
 from cuebook.recordings.recording import FloatArray
+from cuebook.vocabulary import find_nearest
 
 _MISSING_WORDS = ["", "nan", "NaN", "NAN", "n/a", "N/A", "na", "NA", "null", "none", "None", "-"]
 
@@ -40,6 +41,25 @@ class TextTable:
     def n_rows(self) -> int:
         """Return how many rows there are."""
         return len(self.lines)
+
+    def find_column(self, wanted: str) -> int:
+        """Return the index of a column given by its name or its number from 1.
+
+        Raises
+        ------
+        UsageError : there is none; the nearest name is named.
+        """
+        if wanted in self.names:
+            return self.names.index(wanted)
+        if wanted.isdigit() and 1 <= int(wanted) <= len(self.names):
+            return int(wanted) - 1
+        nearest = find_nearest(wanted, self.names) if self.has_header else ()
+        hint = f"Nearest: {', '.join(nearest)}." if nearest else ""
+        raise UsageError(
+            f"{self.file} has no column '{wanted}' (it has {len(self.names)}).",
+            hint,
+            Place(file=self.file),
+        )
 
     def get_cells(self, column: int) -> list[str]:
         """Return a column as text."""
