@@ -6,6 +6,7 @@ from collections import defaultdict
 from dataclasses import replace
 from datetime import timedelta
 from itertools import count, pairwise
+from typing import TypeVar
 
 from hypothesis import given, settings
 from hypothesis import strategies as st
@@ -25,30 +26,43 @@ from cuebook.practice.derive import derive_changes
 from cuebook.practice.log import LoggedBlock, LoggedSession, PracticeLog
 
 LEARNERS = ("ann", "ben", "cat")
+OUTDOORS = (("place", "outdoors"),)
+T = TypeVar("T")
+
+
+def draw_usually(draw: st.DrawFn, usual: T, *rare: T) -> T:
+    """Draw the usual case mostly: where every fact were as likely as not, no set would match."""
+    place = draw(st.integers(0, 13 * len(rare)))
+    return rare[place % len(rare)] if place >= 12 * len(rare) else usual
 
 
 @st.composite
 def draw_block(draw: st.DrawFn, name: str, number: int) -> LoggedBlock:
     """Draw any block a user could log."""
     sign = draw(st.sampled_from(["b", "b", "o", "o", "p", "A", "A", "B", "r", "x"]))
-    learners = draw(st.lists(st.sampled_from(LEARNERS), min_size=1, unique=True))
+    learners = draw_usually(draw, LEARNERS[:2], LEARNERS, LEARNERS[:1], LEARNERS[1:])
     values = {
-        learner: draw(st.lists(st.floats(-5, 5), max_size=3))
+        learner: draw_usually(
+            draw, draw(st.lists(st.floats(-5, 5), min_size=1, max_size=3)), list[float]()
+        )
         for learner in learners
-        if draw(st.booleans())
     }
+    tempo: float | None = None
+    conditions: tuple[tuple[str, str], ...] = ()
+    if draw(st.booleans()) and sign in "bx":
+        conditions = OUTDOORS  # a place to transfer to
     return block(
         name,
         sign,
         number,
         learners=learners,
         values=values,
-        stopped=[one for one in learners if draw(st.integers(0, 9)) == 0],
-        task=draw(st.sampled_from(["reaching", "reaching", "wiping"])),
-        others=draw(st.sampled_from(["none", "none", "none", "some", "many", "unknown"])),
-        tempo=draw(st.sampled_from([None, None, 60.0, 63.0, 90.0])),
-        conditions=draw(st.sampled_from([(), (), (("side", "left"),), (("place", "outdoors"),)])),
-        event=draw(st.sampled_from([None, "monday:1"])),
+        stopped=[one for one in learners if draw_usually(draw, False, True)],
+        task=draw_usually(draw, "reaching", "wiping"),
+        others=draw_usually(draw, "none", "some", "many", "unknown"),
+        tempo=draw_usually(draw, tempo, 60.0, 63.0, 90.0),
+        conditions=draw_usually(draw, conditions, (("side", "left"),), OUTDOORS),
+        event=draw_usually(draw, None, "monday:1"),
     )
 
 
@@ -57,21 +71,16 @@ def draw_log(draw: st.DrawFn) -> PracticeLog:
     """Draw any log a user could make."""
     sessions = []
     day = 0.0
-    for place in range(draw(st.integers(1, 5))):
-        day += draw(st.sampled_from([0.2, 1.0, 3.0, 30.0]))
+    for place in range(draw(st.integers(1, 4))):
+        day += draw(st.sampled_from([1.0, 0.2, 3.0, 30.0]))
+        n_blocks = draw(st.integers(1, 8))
         blocks = tuple(
-            draw(draw_block(f"s{place}/{number}", number))
-            for number in range(1, draw(st.integers(1, 7)) + 1)
+            draw(draw_block(f"s{place}/{number}", number)) for number in range(1, n_blocks + 1)
         )
-        sessions.append(
-            LoggedSession(
-                f"s{place}",
-                START + timedelta(days=day),
-                blocks,
-                do_not_use=draw(st.integers(0, 9)) == 0,
-            )
-        )
-    barred = draw(st.lists(st.sampled_from(LEARNERS), max_size=1))
+        started_at = START + timedelta(days=day)
+        do_not_use = draw_usually(draw, False, True)
+        sessions.append(LoggedSession(f"s{place}", started_at, blocks, do_not_use=do_not_use))
+    barred = draw_usually(draw, [], [LEARNERS[0]])
     return make_log(*sessions, without_consent=barred)
 
 
