@@ -69,8 +69,12 @@ def _describe_worthwhile(document: Mapping[str, Any]) -> str:
     if worthwhile is None:
         return "Worthwhile difference: not known yet."
     note = document.get("worthwhile_note") or ""
-    unit = f" {document['unit']}" if document.get("unit") else ""
-    return f"Worthwhile: {format_number(worthwhile, signed=False)}{unit} {note}".rstrip() + "."
+    because = f" ({note})" if note else ""
+    # On a log scale the difference itself means nothing to a reader; its per cent do.
+    shown = document.get("worthwhile_display")
+    value = worthwhile if shown is None else abs(shown)
+    unit = document.get("unit") if shown is None else document.get("display_unit")
+    return f"Worthwhile: {format_number(value, signed=False)}{f' {unit}' if unit else ''}{because}."
 
 
 def _describe_scale(document: Mapping[str, Any]) -> str:
