@@ -6,6 +6,11 @@ import os
 from pathlib import Path
 
 import pytest
+from hypothesis import settings
+
+# A shared machine may be slow for a moment: laws are tested, not the clock.
+settings.register_profile("laws", deadline=None, print_blob=True)
+settings.load_profile("laws")
 
 RECORDINGS_VARIABLE = "CUEBOOK_RECORDINGS"
 RECORDINGS_TESTS = Path(__file__).parent / "published" / "recordings"
