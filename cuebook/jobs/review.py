@@ -352,6 +352,8 @@ def review_table(request: TableRequest) -> ReviewDocument:
     from cuebook.evidence.use_table import read_use_table  # noqa: PLC0415
 
     better, target = read_better(request.better)
+    if request.transform == "log" and target is not None and target <= 0:
+        raise UsageError(f"A target of {target:g} has no logarithm.", "Leave --transform log out.")
     scale = AttemptScale(
         request.metric or "table", request.transform, better, target, unit=request.unit
     )

@@ -218,6 +218,8 @@ def test_refused_rows_are_told_by_line(tmp_path: Path, capsys: pytest.CaptureFix
         (b"cue,learner,before,after\nx,a,1,2\n", [], 2, "--better"),
         (b"cue,learner,before,after\nx,a,1,2\n", ["--better", "up"], 2, "higher, lower"),
         (b"cue,learner,before,after\nx,a,1,2\n", ["--better", "target:nan"], 2, "target"),
+        (b"cue,learner,before,after\nx,a,1,2\n", ["--better", "target:0", "--transform", "log"], 2,
+         "A target of 0 has no logarithm"),
         (b"cue,learner,before,after\nx,a,1,2\n", ["--better", "higher", "--worthwhile", "0"], 2,
          "worthwhile"),
         (b"cue,learner,before,after\nx,a,1,2\n", ["--better", "higher", "--allowance", "-1"], 2,
