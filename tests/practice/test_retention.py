@@ -170,3 +170,11 @@ def test_a_session_not_to_be_used_is_no_opening_but_its_cues_count() -> None:
     spoiled = derive(visit("b A o"), visit("b B o", day=2, do_not_use=True), visit("b", day=4))
     assert find_reason(spoiled, "A", "retention") == "another_cue_between"
     assert find_reason(spoiled, "B", "immediate") == "session_not_to_be_used"
+
+
+def test_practice_alone_needs_an_opening_before_it() -> None:
+    """For the reference, practice takes the place of the cue: a measure after it is no opening."""
+    derived = derive(visit("p o"), visit("b", day=7))
+    assert find_reason(derived, None, "retention") == "session_began_with_cue"
+    cued = derive(visit("p o A o"), visit("b", day=7))
+    assert find_change(cued, "A", "retention").difference == 71 - 2

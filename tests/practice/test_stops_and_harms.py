@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from dataclasses import replace
 
+import pytest
 from support.practice_logs import (
     METRIC,
     derive,
@@ -127,10 +128,11 @@ def test_a_cue_at_another_seat_height_is_a_cue_on_the_same_task() -> None:
     assert [use.k for use in derived.uses] == [1, 2]
 
 
-def test_another_side_or_aid_is_another_task() -> None:
+@pytest.mark.parametrize("fact", [("side", "left"), ("walking_aid", "frame")])
+def test_another_side_or_aid_is_another_task(fact: tuple[str, str]) -> None:
     """A cue for the other side bars nothing; that there was one is marked."""
     session = visit("b A B o")
-    other = replace(session.blocks[2], conditions=(("side", "left"),))
+    other = replace(session.blocks[2], conditions=(fact,))
     blocks = (*session.blocks[:2], other, session.blocks[3])
     derived = derive(replace(session, blocks=blocks))
     assert list_changes(derived, "immediate") == {"A": 4 - 1}

@@ -154,3 +154,22 @@ def test_calendar_days_count_where_only_dates_are_stored() -> None:
     first, second = visit("b A o", is_date_only=True), visit("b", day=1, is_date_only=True)
     change = find_change(derive(first, second), "A", "retention")
     assert (change.days, "date_only" in change.flags) == (1, True)
+
+
+def test_of_two_sets_before_a_cue_the_baseline_counts() -> None:
+    """B o A o: the set labelled baseline, although the other is later; of two, the later."""
+    assert list_changes(derive(visit("b o A o")), "immediate") == {"A": 4 - 1}
+    assert list_changes(derive(visit("b b A o")), "immediate") == {"A": 4 - 2}
+    assert list_changes(derive(visit("r o A o")), "immediate") == {"A": 4 - 2}
+
+
+def test_only_different_cues_between_sets_of_one_key_are_listed_as_a_pair() -> None:
+    """One cue with practice alone is no pair, nor are two cues between two tempos."""
+    assert derive(visit("b A p o")).confused == ()
+    blocks = (
+        block("one/1", "b", 1, values=[1.0], tempo=60.0),
+        block("one/2", "A", 2, tempo=60.0),
+        block("one/3", "B", 3, tempo=90.0),
+        block("one/4", "o", 4, values=[2.0], tempo=90.0),
+    )
+    assert derive(LoggedSession("one", START, blocks)).confused == ()
