@@ -59,9 +59,11 @@ def _say_next(document: Mapping[str, Any]) -> list[str]:
 
 
 def _say_what_is_needed(document: Mapping[str, Any]) -> str:
-    reasons = document.get("refused") or []
-    if reasons:
-        return f"Missing: {reasons[0]}."
+    counts = document.get("counts") or {}
+    n_changes = counts.get("changes", 0)
+    if n_changes:
+        uses = "use has" if n_changes == 1 else "uses have"
+        return f"Missing: more uses; {n_changes} {uses} a measure before and after so far."
     return "Missing: uses with a measure before the cue and one after it, cue off."
 
 

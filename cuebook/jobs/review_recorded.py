@@ -13,6 +13,8 @@ from cuebook.practice.log import LoggedBlock, PracticeLog
 MOST_LISTED = 200
 _WORDS = {
     "stopped": "this learner had to stop",
+    "no_values": "present, but nothing was measured",
+    "practice_again_too_soon": "the next practice came within 24 hours",
     "no_before": "no attempts before the cue",
     "no_clean_between": "no clean attempts between the two cues",
     "no_after": "no attempts without the cue afterwards",

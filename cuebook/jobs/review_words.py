@@ -7,6 +7,8 @@ from shutil import get_terminal_size
 from textwrap import wrap
 from typing import Any
 
+from cuebook.vocabulary import load_vocabulary
+
 WORDS_WIDTH = 26
 TABLE_WIDTH = 140
 """Terminals at least this wide get one row a cue."""
@@ -106,7 +108,7 @@ _TABLE_HEAD = (
     "95 %",
     "chance",
     "said to",
-    "chosen by",
+    "basis",
     "verdict",
 )
 _NUMBERS = frozenset({3, 5})
@@ -156,10 +158,11 @@ def _describe_blocks(cues: Sequence[Mapping[str, Any]]) -> Iterator[str]:
         )
         yield (
             f"      said {cue['uses']} times to {cue['learners']} {people}, "
-            f"chosen by: {cue.get('grade_words') or 'not known'}"
+            f"{cue.get('grade_words') or 'not known who chose'}"
         )
 
 
+_NO_HARM = frozenset({"planned_end", "equipment", "tired"})
 _MARKS = {
     "one_learner_only": "one learner only",
     "rank_not_known": "rank not known",
@@ -176,9 +179,26 @@ def _describe_marks(cues: Sequence[Mapping[str, Any]]) -> Iterator[str]:
             for mark in cue.get("marks") or ()
             if mark != "in_tie_band" or len(tied) > 1
         ]
-        marks += [f"missing: {what}" for what in cue.get("missing") or ()]
+        marks += _describe_harms(cue.get("harm_details") or {})
+        missing = ", ".join(str(what) for what in cue.get("missing") or ())
+        marks += [f"missing: {missing}"] if missing else []
         if marks:
             yield f"  {cue['cue']}: " + "; ".join(marks)
+
+
+def _describe_harms(details: Mapping[str, Any]) -> list[str]:
+    """Return stops and events beside the number of uses they happened in."""
+    vocabulary = load_vocabulary()
+    counted = [
+        f"{said}{vocabulary.label(list_name, slug).lower()} {count}"
+        for list_name, name, said in (
+            ("reason_for_stopping", "stops", "stopped for "),
+            ("event", "events", ""),
+        )
+        for slug, count in (details.get(name) or {}).items()
+        if vocabulary.has(list_name, slug) and slug not in _NO_HARM
+    ]
+    return [f"in {details['uses']} uses: {', '.join(counted)}"] if counted else []
 
 
 def describe_recorded(recorded: Sequence[Mapping[str, Any]]) -> Iterator[str]:
