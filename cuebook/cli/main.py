@@ -62,7 +62,7 @@ class LazyGroup(click.Group):
     "--library", "location", envvar="CUEBOOK_LIBRARY", metavar="PATH", help="Folder of the library."
 )
 @click.pass_context
-def cuebook(ctx: click.Context, location: str | None) -> None:
+def cuebook(ctx: click.Context, location: str | None) -> int | None:
     """Find, log and review the words that steer movement.
 
     Without a command the screens open. Every command takes --json and --library.
@@ -70,10 +70,11 @@ def cuebook(ctx: click.Context, location: str | None) -> None:
     if ctx.invoked_subcommand is None:
         if not (sys.stdin.isatty() and sys.stdout.isatty()):
             click.echo(ctx.get_help())  # screens need a terminal; a script gets the list
-            return
+            return None
         from cuebook.tui.app import run_app  # noqa: PLC0415
 
-        run_app(location)
+        return run_app(location)
+    return None
 
 
 def run(arguments: list[str]) -> int:

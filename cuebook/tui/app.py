@@ -1,120 +1,93 @@
-"""The application: three places, one shared state."""
+"""The application: three places, one shared snapshot."""
 
 from __future__ import annotations
 
-import threading
-from collections.abc import Callable
 from dataclasses import replace
 from pathlib import Path
 from typing import ClassVar
 
-from textual.app import App
 from textual.binding import Binding, BindingType
+from textual.content import Content
 from textual.events import Resize
-from textual.theme import Theme
 
-from cuebook.errors import CuebookError
-from cuebook.jobs.people import (
-    NewLearner,
-    PersonLine,
-    add_learner,
-    list_people,
-    set_consent,
-)
-from cuebook.tui.boxes import ConsentBox, PickBox, ReadBox
+from cuebook.jobs.log_entries import BlockEntry
+from cuebook.library.lookup import Hit
+from cuebook.tui.boxes import ReadBox
+from cuebook.tui.colours import DARK, LIGHT
 from cuebook.tui.find_screen import FindScreen
+from cuebook.tui.frame import FramedScreen
+from cuebook.tui.key_list import list_keys
 from cuebook.tui.log_screen import LogScreen
+from cuebook.tui.logbook import make_referral
+from cuebook.tui.messages import MembersRead, PeopleRead
+from cuebook.tui.people_app import PeopleApp
+from cuebook.tui.pick_box import Choice, PickBox
+from cuebook.tui.ports import LibraryJobs
 from cuebook.tui.review_screen import ReviewScreen
 from cuebook.tui.state import Shared
-from cuebook.vocabulary import load_vocabulary
+from cuebook.tui.workers import describe_fault
 
-DARK = Theme(
-    name="cuebook-dark",
-    primary="#6fa8dc",
-    secondary="#6fa8dc",
-    accent="#e69138",
-    warning="#e69138",
-    error="#e69138",
-    success="#6fa8dc",
-    background="#101418",
-    surface="#181e24",
-    panel="#22303c",
-    foreground="#e8e8e8",
-    dark=True,
-)
-LIGHT = Theme(
-    name="cuebook-light",
-    primary="#0b5394",
-    secondary="#0b5394",
-    accent="#b45f06",
-    warning="#b45f06",
-    error="#b45f06",
-    success="#0b5394",
-    background="#fbfbf8",
-    surface="#f2f2ee",
-    panel="#dfe6ec",
-    foreground="#1a1a1a",
-    dark=False,
-)
-KEYS = (
-    "F2   Find: type the problem, read fitting cues",
-    "F3   Log: what was said, to whom, what followed",
-    "F4   What shifted: which cues moved a measure",
-    "F5   For whom: pick a learner or a group, or add a learner",
-    "F8   Light or dark",
-    "F10  Leave",
-    "",
-    "In Log:",
-    "O    before any cue: the opening measure",
-    "C    practice with the cue",
-    "A    practice without a cue",
-    "P    straight after, cue off",
-    "S    same again",
-    "N    new session      E  end the session      T  task",
-    "",
-    "In What shifted:  Enter opens a question, R ranks anew, Escape goes back to the questions",
-)
+NARROW_WIDTH, WIDE_WIDTH = 72, 110
+LOW_HEIGHT, HIGH_HEIGHT = 22, 36
 
 
-class CuebookApp(App[None]):
+class CuebookApp(PeopleApp):
     """Find, Log and What shifted, by keyboard alone."""
 
     CSS_PATH = "theme.tcss"
     ENABLE_COMMAND_PALETTE = False
     TITLE = "Cuebook"
     BINDINGS: ClassVar[list[BindingType]] = [
-        Binding("f1", "show_keys", "Keys"),
-        Binding("question_mark", "show_keys", "Keys", show=False),
-        Binding("f2", "go('find')", "Find"),
-        Binding("f3", "go('log')", "Log"),
-        Binding("f4", "go('review')", "What shifted"),
-        Binding("f5", "pick_who", "For whom"),
+        Binding("f1", "show_keys", "All keys of this screen"),
+        Binding("f2", "go('find')", "Find: cues for a problem"),
+        Binding("f3", "go('log')", "Log: what was said, to whom, what followed"),
+        Binding("f4", "go('review')", "What shifted: which cues moved a measure"),
+        Binding("f5", "pick_who", "For whom: pick or add a learner or a group"),
         Binding("f8", "turn_light", "Light or dark"),
         Binding("f10", "quit", "Leave"),
     ]
 
-    def __init__(self, location: str | Path | None = None) -> None:
-        super().__init__()
-        self.shared = Shared(location=location)
-        self._store_lock = threading.Lock()
+    def __init__(self, location: str | Path | None = None, jobs: LibraryJobs | None = None) -> None:
+        super().__init__(location, jobs)
+        self._places: dict[str, FramedScreen] = {
+            "find": FindScreen(),
+            "log": LogScreen(),
+            "review": ReviewScreen(),
+        }
 
     def on_mount(self) -> None:
         """Open with Find."""
         for theme in (DARK, LIGHT):
             self.register_theme(theme)
         self.theme = DARK.name
-        for name, screen in (
-            ("find", FindScreen()),
-            ("log", LogScreen()),
-            ("review", ReviewScreen()),
-        ):
+        for name, screen in self._places.items():
             self.install_screen(screen, name)
         self.push_screen("find")
 
+    def on_unmount(self) -> None:
+        """Leave only when everything handed over is stored."""
+        self.store.close()
+
     def on_resize(self, event: Resize) -> None:
-        """Give more room to details where there is room."""
-        self.set_class(event.size.height < 24, "narrow")
-        self.set_class(event.size.height >= 36, "wide")
+        """Give room to what is being worked on."""
+        width, height = event.size
+        self.set_class(width < NARROW_WIDTH, "narrow")
+        self.set_class(width >= WIDE_WIDTH, "wide")
+        self.set_class(height < LOW_HEIGHT, "low")
+        self.set_class(height >= HIGH_HEIGHT, "high")
+
+    def share(self, shared: Shared) -> None:
+        """Replace the shared snapshot and hand it to the screen."""
+        self.shared = shared
+        for screen in self.screen_stack:
+            if isinstance(screen, FramedScreen):
+                screen.shared = shared
+
+    def tell(self, words: str) -> None:
+        """Say something in the status line of the screen."""
+        for screen in self.screen_stack:
+            if isinstance(screen, FramedScreen):
+                screen.say(words)
 
     def action_go(self, place: str) -> None:
         """Go to a place."""
@@ -126,95 +99,65 @@ class CuebookApp(App[None]):
         self.theme = LIGHT.name if self.theme == DARK.name else DARK.name
 
     def action_show_keys(self) -> None:
-        """List all keys."""
+        """List all keys of the present screen."""
         if not self.screen.is_modal:
-            self.push_screen(ReadBox("Keys", KEYS))
+            self.push_screen(ReadBox("Keys", list_keys(type(self), type(self.screen))))
 
-    def action_pick_who(self) -> None:
-        """Ask for whom."""
-        if self.screen.is_modal:
-            return
-        try:
-            people = list_people(self.shared.location)
-        except CuebookError as error:
-            self.show_error(error)
-            return
-        self.push_screen(PickBox(people), self._take_who)
-
-    def pick_task(self) -> None:
-        """Ask for the task."""
-        tasks = tuple(
-            PersonLine(task.slug, is_group=False, label=task.label, note=task.label)
-            for task in load_vocabulary().tasks
-        )
-
-        def take(task: PersonLine | None) -> None:
-            if task is not None and task.code:
-                self._share(replace(self.shared, task=task.code))
-
-        self.push_screen(PickBox(tasks, of_what="task"), take)
-
-    def take_cue(self, code: str, words: str, task: str | None, metric: str | None) -> None:
+    def take_cue(self, hit: Hit, task: str | None) -> None:
         """Take a cue into the log and go there."""
-        self.shared = replace(
-            self.shared,
-            cue=code,
-            cue_words=words,
-            task=task or self.shared.task,
-            metric=metric or self.shared.metric,
+        self.share(
+            replace(
+                self.shared,
+                cue=hit.cue.code,
+                cue_words=hit.text,
+                cue_caution=" ".join(hit.cautions),
+                task=task or self.shared.task,
+                metric=hit.cue.target_metric or self.shared.metric,
+            )
         )
         self.switch_screen("log")
 
-    def show_error(self, error: CuebookError) -> None:
-        """Show what went wrong in a box that scrolls."""
-        self.push_screen(ReadBox("This did not work", (error.message, error.hint)))
-
-    def store_in_turn(self, work: Callable[[], None]) -> None:
-        """Run one entry after the other, in the order they were made."""
-        with self._store_lock:
-            work()
-
-    def _take_who(self, who: PersonLine | None) -> None:
+    def note_referred(self) -> None:
+        """Note of a learner that they were stopped and referred; ask of whom if need be."""
+        who, task = self.shared.who, self.shared.task
         if who is None:
+            self._run(lambda: PeopleRead(self.jobs.list_people()), "people")
+            self.tell("Of whom? Pick the learner, then F9 again.")
+        elif task is None:
+            self.tell("In which task? F6 picks it, then F9 again.")
+        elif who.is_group:
+            self._run(lambda: MembersRead(who.code, self.jobs.list_members(who.code)), "people")
+        else:
+            self._log_referral(make_referral(who, who.code, task))
+
+    def on_members_read(self, message: MembersRead) -> None:
+        """Ask which member was stopped and referred."""
+        who, task = self.shared.who, self.shared.task
+        if who is None or task is None or who.code != message.group or self.screen.is_modal:
             return
-        if not who.code:
-            try:
-                code = add_learner(self.shared.location, NewLearner())
-            except CuebookError as error:
-                self.show_error(error)
-                return
-            who = PersonLine(code, is_group=False, label="", note="new")
-            self._share(replace(self.shared, who=who))
-            self.push_screen(ConsentBox(code), lambda answer: self._note_consent(code, answer))
-            return
-        self._share(replace(self.shared, who=who))
 
-    def _note_consent(self, code: str, answer: tuple[str, str, str] | None) -> None:
-        if answer is None:
-            return
-        given, given_by, assent = answer
-        try:
-            set_consent(
-                self.shared.location,
-                code,
-                "use_for_ranking",
-                given,
-                given_by=given_by,
-                assent=assent,
-            )
-        except CuebookError as error:
-            self.show_error(error)
+        def take(code: str | None) -> None:
+            if code is not None:
+                self._log_referral(make_referral(who, code, task))
 
-    def _share(self, shared: Shared) -> None:
-        self.shared = shared
-        screen = self.screen
-        if isinstance(screen, FindScreen):
-            screen.shared = shared
-            screen.look_up_again()
-        elif isinstance(screen, (LogScreen, ReviewScreen)):
-            screen.on_screen_resume()
+        members = [Choice(code, "") for code in message.members]
+        self.push_screen(PickBox("Who was stopped and referred?", members), take)
+
+    def _log_referral(self, entry: BlockEntry) -> None:
+        log = self._places["log"]
+        if isinstance(log, LogScreen):
+            self.switch_screen("log")
+            self.call_later(log.log_entry, entry)
+
+    def _fatal_error(self) -> None:
+        """Leave with one plain sentence; a traceback is of no use beside a pupil."""
+        fault = describe_fault(self._exception or RuntimeError())
+        self._exit_renderables.append(Content(f"{fault.message} {fault.hint}").plain)
+        self._close_messages_no_wait()
 
 
-def run_app(location: str | Path | None = None) -> None:
-    """Open the screens."""
-    CuebookApp(location).run()
+def run_app(location: str | Path | None = None) -> int:
+    """Open the screens; return the exit code."""
+    app = CuebookApp(location)
+    app.run()
+    return app.return_code or 0

@@ -6,7 +6,8 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
-EFFECT, INNER, OUTER, ZERO, BAND = "●", "━", "─", "│", "·"
+EFFECT, INNER, OUTER, ZERO, CROSSED, BAND = "●", "━", "─", "│", "┼", "·"
+MARGIN = 0.03
 
 
 @dataclass(frozen=True, slots=True)
@@ -28,24 +29,35 @@ def make_scale(cues: Sequence[Mapping[str, Any]], width: int) -> BarScale:
     """Return a scale that holds every 95 % interval and 0."""
     ends = [cue[name] for cue in cues for name in ("low95", "high95") if cue[name] is not None]
     low, high = min([0.0, *ends]), max([0.0, *ends])
-    margin = 0.03 * (high - low)
+    margin = MARGIN * (high - low)
     return BarScale(low - margin, high + margin, max(width, 8))
 
 
 def draw_bar(cue: Mapping[str, Any], scale: BarScale, worthwhile: float | None) -> str:
-    """Return one row: 95 % thin, 80 % thick, the effect, 0 and the worthwhile band."""
+    """Return one row: 95 % thin, 80 % thick, the effect, 0 and the band too small to matter."""
     cells = [" "] * scale.width
+    zero = scale.place(0.0)
     if worthwhile:
         for at in range(scale.place(-worthwhile), scale.place(worthwhile) + 1):
             cells[at] = BAND
-    cells[scale.place(0.0)] = ZERO
+    cells[zero] = ZERO
     for low, high, mark in (("low95", "high95", OUTER), ("low80", "high80", INNER)):
         if cue[low] is not None and cue[high] is not None:
             for at in range(scale.place(cue[low]), scale.place(cue[high]) + 1):
                 cells[at] = mark
-    zero = scale.place(0.0)
     if cells[zero] in {OUTER, INNER}:
-        cells[zero] = "┼"
+        cells[zero] = CROSSED
     if cue["effect"] is not None:
         cells[scale.place(cue["effect"])] = EFFECT
+    return "".join(cells)
+
+
+def draw_axis(scale: BarScale, low: str, zero: str, high: str) -> str:
+    """Return the line of labels: both ends, and the line to beat under its own cell if it fits."""
+    cells = list(low.ljust(scale.width - len(high)) + high)[: scale.width]
+    begin = scale.place(0.0) - len(zero) // 2
+    begin = min(max(begin, 0), scale.width - len(zero))
+    around = cells[max(begin - 1, 0) : begin + len(zero) + 1]
+    if begin >= 0 and not "".join(around).strip():
+        cells[begin : begin + len(zero)] = zero
     return "".join(cells)

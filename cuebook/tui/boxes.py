@@ -1,27 +1,39 @@
-"""Boxes over a screen: pick somebody, read an error, read the keys."""
+"""Boxes over a screen that are read or answered with one key."""
 
 from __future__ import annotations
 
 from typing import ClassVar
 
-from rich.text import Text
-from textual.app import ComposeResult
+from textual.app import App, ComposeResult
 from textual.binding import Binding, BindingType
 from textual.containers import Vertical, VerticalScroll
+from textual.content import Content
 from textual.screen import ModalScreen
-from textual.widgets import Input, OptionList, Static
-from textual.widgets.option_list import Option
+from textual.widgets import Input, Static
 
-from cuebook.jobs.people import PersonLine
+SHARE, WIDEST, ROOM_BESIDE = 0.92, 96, 4
+"""Of the screen's width, in cells, and what border and padding take; as in theme.tcss."""
 
-MOST_ROWS = 200
+
+def get_box_width(app: App[None]) -> int:
+    """Return how many cells a line in a box has."""
+    width = app.size.width
+    is_full = app.has_class("narrow") or app.has_class("low")
+    return max(min(width if is_full else int(width * SHARE), WIDEST) - ROOM_BESIDE, 20)
+
+
+def make_field(name: str, value: str = "", placeholder: str = "") -> Input:
+    """Return a field of one line whose cursor does not blink."""
+    field = Input(value=value, placeholder=placeholder, id=name, compact=True)
+    field.cursor_blink = False
+    return field
 
 
 class ReadBox(ModalScreen[None]):
     """Words that need reading: scrolls, closes with Enter or Escape."""
 
     BINDINGS: ClassVar[list[BindingType]] = [
-        Binding("escape,enter", "dismiss_box", "Close"),
+        Binding("escape,enter", "close_box", "Close"),
     ]
 
     def __init__(self, title: str, lines: tuple[str, ...]) -> None:
@@ -32,83 +44,44 @@ class ReadBox(ModalScreen[None]):
     def compose(self) -> ComposeResult:
         """Lay out title, words and how to close."""
         with Vertical():
-            yield Static(Text(self._title, style="bold"))
-            with VerticalScroll():
-                yield Static(Text("\n".join(self._lines)))
-            yield Static(Text("Enter or Escape closes."))
+            yield Static(Content.styled(self._title, "bold"))
+            with VerticalScroll(id="words"):
+                yield Static(Content("\n".join(self._lines)))
+            yield Static("Up and Down scroll.  Enter or Escape closes.", classes="foot")
 
-    def action_dismiss_box(self) -> None:
+    def on_mount(self) -> None:
+        """Let the keys scroll the words."""
+        self.query_one("#words").focus()
+
+    def action_close_box(self) -> None:
         """Close the box."""
         self.dismiss(None)
 
 
-class PickBox(ModalScreen[PersonLine | None]):
-    """Pick a learner or group by the first letters of the code; or add a learner."""
+class WordsBox(ModalScreen[str | None]):
+    """A line of somebody's own words."""
 
-    BINDINGS: ClassVar[list[BindingType]] = [
-        Binding("escape", "give_up", "Close"),
-        Binding("down", "to_list", "List", show=False),
-        Binding("f7", "add", "New learner"),
-    ]
+    BINDINGS: ClassVar[list[BindingType]] = [Binding("escape", "give_up", "Close")]
 
-    def __init__(self, people: tuple[PersonLine, ...], of_what: str = "code") -> None:
+    def __init__(self, title: str, value: str = "") -> None:
         super().__init__(classes="modal")
-        self._people = people
-        self._of_what = of_what
-        self._shown: list[PersonLine] = []
+        self._title = title
+        self._value = value
 
     def compose(self) -> ComposeResult:
-        """Lay out the field, the list and the keys."""
+        """Lay out title, field and keys."""
         with Vertical():
-            asked = "For whom?" if self._of_what == "code" else "Which task?"
-            yield Static(Text(f"{asked} Type the first letters.", style="bold"))
-            field = Input(placeholder=self._of_what, id="code")
-            field.cursor_blink = False
-            yield field
-            yield OptionList(id="people")
-            adds = "  F7 adds a new learner." if self._of_what == "code" else ""
-            yield Static(Text(f"Enter picks.{adds}  Escape closes."))
+            yield Static(Content.styled(self._title, "bold"))
+            yield make_field("own_words", self._value)
+            yield Static("Enter keeps the words.  Escape closes.", classes="foot")
 
-    def on_mount(self) -> None:
-        """Show everybody and take the keys."""
-        self._refill("")
-        self.query_one("#code", Input).focus()
-
-    def on_input_changed(self, event: Input.Changed) -> None:
-        """Narrow the list to what is typed."""
-        self._refill(event.value.strip().lower())
-
-    def on_input_submitted(self) -> None:
-        """Pick the first in the list."""
-        if self._shown:
-            self.dismiss(self._shown[0])
-
-    def on_option_list_option_selected(self, event: OptionList.OptionSelected) -> None:
-        """Pick the one under the cursor."""
-        self.dismiss(self._shown[event.option_index])
-
-    def action_to_list(self) -> None:
-        """Move from the field into the list."""
-        self.query_one("#people", OptionList).focus()
+    def on_input_submitted(self, event: Input.Submitted) -> None:
+        """Hand the words on."""
+        self.dismiss(event.value.strip())
 
     def action_give_up(self) -> None:
-        """Close without picking."""
+        """Close without keeping."""
         self.dismiss(None)
-
-    def action_add(self) -> None:
-        """Ask for a new learner with a code made by the program."""
-        if self._of_what == "code":
-            self.dismiss(PersonLine("", is_group=False, label="new", note=""))
-
-    def _refill(self, typed: str) -> None:
-        self._shown = [one for one in self._people if one.code.startswith(typed)][:MOST_ROWS]
-        listing = self.query_one("#people", OptionList)
-        listing.clear_options()
-        for one in self._shown:
-            kind = "group, " if one.is_group else ""
-            listing.add_option(Option(Text(f"{one.code}  {kind}{one.note}")))
-        if not self._shown:
-            listing.add_option(Option(Text("none of that name"), disabled=True))
 
 
 class ConsentBox(ModalScreen[tuple[str, str, str] | None]):
@@ -128,15 +101,15 @@ class ConsentBox(ModalScreen[tuple[str, str, str] | None]):
     def compose(self) -> ComposeResult:
         """Lay out the question and its keys."""
         words = (
-            f"New learner: {self._code}\n"
-            "May results be used to rank cues? Asked and answered today:\n"
+            "May results be used to rank cues? Ask, then press:\n"
             "Y      yes, said by the person\n"
             "G      yes, a parent or guardian said so and the child agreed\n"
             "N      no: results stay on their own page\n"
             "Enter  not asked, which counts as no"
         )
         with Vertical():
-            yield Static(Text(words))
+            yield Static(Content.styled(f"New learner: {self._code}", "bold"))
+            yield Static(Content(words))
 
     def action_answer(self, answer: str, given_by: str, assent: str) -> None:
         """Hand the answer on."""

@@ -2,23 +2,29 @@
 
 from __future__ import annotations
 
+import time
 from typing import ClassVar
 
-from rich.text import Text
 from textual.app import ComposeResult
 from textual.binding import Binding, BindingType
+from textual.containers import Horizontal, VerticalScroll
+from textual.content import Content
 from textual.widgets import Input, OptionList, Static
 from textual.widgets.option_list import Option
+from textual.worker import get_current_worker
 
 from cuebook.jobs.find_cue import FoundCues
-from cuebook.jobs.find_in_library import find_in_library
-from cuebook.library.lookup import Hit, Request
-from cuebook.tui.frame import FramedScreen
+from cuebook.library.lookup import Hit
+from cuebook.tui.boxes import make_field
+from cuebook.tui.find_words import describe_detail, describe_row, describe_understood
+from cuebook.tui.frame import FramedScreen, Listing
 from cuebook.tui.messages import CuesFound
-from cuebook.tui.workers import attempt
-from cuebook.vocabulary import load_vocabulary
+from cuebook.tui.ports import MOST_CUES
+from cuebook.tui.state import Shared
 
-MOST_CUES = 20
+PAUSE_S = 0.08
+"""A look-up begins when no key has come for this long."""
+OPENING = "Type what you see, in your own words. Up, Down: the cues. F5: for whom."
 
 
 class FindScreen(FramedScreen):
@@ -26,162 +32,174 @@ class FindScreen(FramedScreen):
 
     TITLE_WORD = "Find"
     BINDINGS: ClassVar[list[BindingType]] = [
-        Binding("down", "to_list", "To the cues", show=False),
-        Binding("escape", "to_field", "Back to the words", show=False),
-        Binding("f5", "app.pick_who", "For whom"),
+        Binding("up", "move('cursor_up')", "Up and down in the cues", priority=True),
+        Binding("down", "move('cursor_down')", "Up and down in the cues", priority=True),
+        Binding("pageup", "scroll_detail(-1)", "Read on in the detail", priority=True),
+        Binding("pagedown", "scroll_detail(1)", "Read on in the detail", priority=True),
+        Binding("enter", "take", "Take the cue into Log"),
+        Binding("f6", "app.pick_task", "Only cues for one task"),
+        Binding("f9", "note_referred", "Note: stopped and referred, with the time"),
+        Binding("escape", "leave_field", "Out of the field and back"),
     ]
 
     def __init__(self) -> None:
         super().__init__()
         self._found: FoundCues | None = None
+        self._asked: tuple[str, str | None, str | None] = ("", None, None)
 
     def compose_panels(self) -> ComposeResult:
         """Lay out field, understanding, cues and detail."""
-        field = Input(placeholder="What do you see? In your own words.", id="problem")
-        field.cursor_blink = False
-        yield field
-        yield Static("", id="understood", classes="understood")
-        yield OptionList(id="cues")
-        yield Static("", id="detail", classes="detail")
+        with Horizontal(id="asking"):
+            yield Static("Problem: ", id="asked")
+            yield make_field("problem")
+        yield Static("", id="understood")
+        yield Listing(id="cues")
+        with VerticalScroll(id="detail", can_focus=False):
+            yield Static("", id="about")
 
     def on_mount(self) -> None:
         """Take the keys and say what to do."""
-        self.query_one("#problem", Input).focus()
-        self.say("Type the problem. Down goes to the cues. F5: for whom.")
+        self._field.focus()
+        self.say(OPENING)
 
-    def on_input_changed(self, event: Input.Changed) -> None:
-        """Look up what is typed so far, off the screen's thread."""
-        text = event.value.strip()
-        if not text:
-            self._show_nothing()
+    def watch_shared(self) -> None:
+        """Look up the same words for somebody else or another task."""
+        super().watch_shared()
+        if self.is_mounted:
+            self._look_up()
+
+    def on_input_changed(self) -> None:
+        """Look up what is typed so far."""
+        self._look_up()
+
+    def on_input_submitted(self, event: Input.Submitted) -> None:
+        """Go to the first cue; then take the cue under the cursor."""
+        event.stop()
+        self.action_take()
+
+    def action_move(self, where: str) -> None:
+        """Move in the list of cues."""
+        getattr(self._list, f"action_{where}")()
+
+    def action_scroll_detail(self, direction: int) -> None:
+        """Read on in the detail."""
+        self.query_one("#detail").scroll_relative(y=4 * direction, animate=False)
+
+    def action_leave_field(self) -> None:
+        """Give the letters free for short keys, or take them back."""
+        if self._field.has_focus:
+            self.set_focus(None)
+            self.say("1 Find, 2 Log, 3 What shifted, W for whom, ? keys, Escape: type again.")
+        else:
+            self._field.focus()
+            self.say(OPENING)
+
+    def action_take(self) -> None:
+        """Take the cue under the cursor into the log."""
+        if not self._hits:
             return
-        self._look_up(text)
+        at = self._list.highlighted
+        if at is None:
+            self._list.highlighted = 0
+            self.say("Enter takes this cue into Log. Up, Down: another.")
+            return
+        hit = self._hits[at]
+        self.cuebook.take_cue(hit, self._guess_task(hit))
 
-    def on_input_submitted(self) -> None:
-        """Go to the cues."""
-        self.action_to_list()
+    def action_note_referred(self) -> None:
+        """Note that a learner was stopped and referred."""
+        if self._found is not None and self._found.stop is not None:
+            self.cuebook.note_referred()
 
-    def action_to_list(self) -> None:
-        """Move to the list of cues."""
-        listing = self.query_one("#cues", OptionList)
-        if listing.option_count and self._found is not None and self._found.hits:
-            listing.focus()
-            if listing.highlighted is None:
-                listing.highlighted = 0
+    @property
+    def _field(self) -> Input:
+        return self.query_one("#problem", Input)
 
-    def action_to_field(self) -> None:
-        """Go back to the words."""
-        self.query_one("#problem", Input).focus()
+    @property
+    def _list(self) -> Listing:
+        return self.query_one("#cues", Listing)
 
-    def look_up_again(self) -> None:
-        """Look up the same words for somebody else."""
-        text = self.query_one("#problem", Input).value.strip()
-        if text:
-            self._look_up(text)
+    @property
+    def _hits(self) -> tuple[Hit, ...]:
+        return () if self._found is None else self._found.hits
 
-    def _look_up(self, text: str) -> None:
-        shared = self.cuebook.shared
-        who = shared.who
+    def _look_up(self) -> None:
+        """Look up the words in a thread once no key comes for a moment."""
+        text, shared = self._field.value.strip(), self.shared
+        asked = make_asked(text, shared)
+        if asked == self._asked:
+            return
+        self._asked = asked
+        if not text:
+            self.workers.cancel_group(self, "look-up")
+            self._show(None)
+            self.say(OPENING)
+            return
+        jobs = self.cuebook.jobs
 
-        def job() -> CuesFound:
-            found = find_in_library(
-                shared.location,
-                text,
-                learner=who.code if who is not None and not who.is_group else None,
-                group=who.code if who is not None and who.is_group else None,
-                request=Request(limit=MOST_CUES),
-            )
-            return CuesFound(text, found)
+        def job() -> CuesFound | None:
+            worker = get_current_worker()
+            time.sleep(PAUSE_S)
+            if worker.is_cancelled:
+                return None
+            return CuesFound(text, jobs.find(text, shared.who, asked[2]))
 
-        self.run_worker(
-            lambda: attempt(job, self.post_message),
-            thread=True,
-            exclusive=True,
-            group="look-up",
-            exit_on_error=False,
-        )
+        self.run_job(job, "look-up")
 
     def on_cues_found(self, message: CuesFound) -> None:
         """Show what has been found, unless the words have changed since."""
         message.stop()
-        if message.text != self.query_one("#problem", Input).value.strip():
+        if message.text != self._asked[0]:
             return
-        self._found = message.found
-        listing = self.query_one("#cues", OptionList)
-        listing.clear_options()
-        if message.found.stop is not None:
-            self.query_one("#understood", Static).update(Text(message.found.stop.message))
-            self.query_one("#detail", Static).update("")
-            self.say("No cue is shown for this.")
-            return
-        self.query_one("#understood", Static).update(_describe_understood(message.found))
-        for hit in message.found.hits:
-            listing.add_option(Option(_describe_row(hit)))
-        self.query_one("#detail", Static).update("")
-        if message.found.hits:
-            self.say(f"{len(message.found.hits)} cues. Down, then Enter takes one into Log.")
+        found = message.found
+        self._show(found)
+        if found.stop is not None:
+            self.say("No cue for this. F9 notes: stopped and referred, with the time.")
+        elif not found.hits:
+            self.say("No cue fits yet.")
+        elif len(found.hits) >= MOST_CUES:
+            self.say(f"The best {MOST_CUES} shown; say more to narrow. Down, Enter takes one.")
         else:
-            self.say(message.found.advice or "No cue fits. Say more: what moves, doing what?")
+            n = len(found.hits)
+            self.say(f"{n} cue{'' if n == 1 else 's'}. Down, then Enter takes one into Log.")
 
     def on_option_list_option_highlighted(self, event: OptionList.OptionHighlighted) -> None:
-        """Show the words of a cue, large, with what they carry and leave out."""
-        if self._found is not None and event.option_index < len(self._found.hits):
-            hit = self._found.hits[event.option_index]
-            self.query_one("#detail", Static).update(_describe_detail(hit))
+        """Show the words of the cue under the cursor with what they carry and leave out."""
+        if event.option_index < len(self._hits):
+            self._show_detail(describe_detail(self._hits[event.option_index]))
 
     def on_option_list_option_selected(self, event: OptionList.OptionSelected) -> None:
-        """Take a cue into the log."""
-        if self._found is None or event.option_index >= len(self._found.hits):
-            return
-        hit = self._found.hits[event.option_index]
-        task = self._guess_task(hit)
-        self.cuebook.take_cue(hit.cue.code, hit.text, task, hit.cue.target_metric)
+        """Take the cue that was pointed at."""
+        self._list.highlighted = event.option_index
+        self.action_take()
+
+    def _show(self, found: FoundCues | None) -> None:
+        self._found = found
+        understood, detail = Content(""), Content("")
+        if found is not None and found.stop is not None:
+            understood = Content.styled(f"! {found.stop.message}", "bold $warning")
+        elif found is not None:
+            understood = describe_understood(found)
+            advice = found.advice or "No cue fits. Say more: what moves, doing what?"
+            detail = describe_detail(found.hits[0]) if found.hits else Content(advice)
+        self.query_one("#understood", Static).update(understood)
+        self._list.clear_options()
+        self._list.add_options([Option(describe_row(hit)) for hit in self._hits])
+        self._show_detail(detail)
+
+    def _show_detail(self, detail: Content) -> None:
+        self.query_one("#about", Static).update(detail)
+        self.query_one("#detail").scroll_home(animate=False)
 
     def _guess_task(self, hit: Hit) -> str | None:
-        understood = self._found.understanding if self._found is not None else None
-        tasks = [task.slug for task in understood.tasks] if understood is not None else []
-        for task in tasks:
-            if task in hit.cue.tasks:
-                return task
-        return hit.cue.tasks[0] if hit.cue.tasks else None
-
-    def _show_nothing(self) -> None:
-        self._found = None
-        self.query_one("#cues", OptionList).clear_options()
-        self.query_one("#understood", Static).update("")
-        self.query_one("#detail", Static).update("")
-        self.say("Type the problem. Down goes to the cues. F5: for whom.")
+        if self.shared.task_was_picked:
+            return self.shared.task
+        understood = () if self._found is None else self._found.understanding.tasks
+        spoken_of = [task.slug for task in understood if task.slug in hit.cue.tasks]
+        return next(iter((*spoken_of, *hit.cue.tasks)), None)
 
 
-def _describe_understood(found: FoundCues) -> Text:
-    vocabulary = load_vocabulary()
-    line = Text()
-    for caution in found.cautions:
-        line.append(f"! {caution}\n")
-    if found.understanding is None:
-        return line
-    features = [vocabulary.label("feature", one.slug) for one in found.understanding.features[:4]]
-    tasks = [vocabulary.label("task", one.slug) for one in found.understanding.tasks[:2]]
-    line.append("Understood: " + (", ".join([*features, *tasks]) or "nothing yet"))
-    return line
-
-
-def _describe_row(hit: Hit) -> Text:
-    kind = load_vocabulary().screen_word(hit.cue.kind)
-    row = Text()
-    for caution in hit.cautions[:1]:
-        row.append(f"! {caution}\n")
-    row.append(f"{hit.text}", style="bold")
-    row.append(f"  ({kind.lower()})")
-    return row
-
-
-def _describe_detail(hit: Hit) -> Text:
-    detail = Text()
-    for caution in hit.cautions:
-        detail.append(f"! {caution}\n")
-    detail.append(f"Say: {hit.text}\n", style="bold")
-    detail.append(f"Carries: {hit.cue.captures}\n")
-    detail.append(f"Leaves out: {hit.cue.leaves_out}\n")
-    detail.append(f"Why: {'; '.join(hit.why)}")
-    return detail
+def make_asked(text: str, shared: Shared) -> tuple[str, str | None, str | None]:
+    """Return what a look-up depends on: the words, for whom, and the task if one was picked."""
+    who = None if shared.who is None else shared.who.code
+    return text, who, shared.task if shared.task_was_picked else None

@@ -2,16 +2,19 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from collections.abc import Callable
+from typing import TYPE_CHECKING, Any, ClassVar
 
-from rich.text import Text
 from textual.app import ComposeResult
+from textual.binding import Binding, BindingType
+from textual.content import Content
 from textual.reactive import reactive
 from textual.screen import Screen
-from textual.widgets import Static
+from textual.widgets import OptionList, Static
 
 from cuebook.tui.messages import WorkFailed
 from cuebook.tui.state import Shared
+from cuebook.tui.workers import attempt
 
 if TYPE_CHECKING:
     from cuebook.tui.app import CuebookApp
@@ -19,10 +22,22 @@ if TYPE_CHECKING:
 PLACES = (("F2", "Find"), ("F3", "Log"), ("F4", "What shifted"))
 
 
+class Listing(OptionList, can_focus=False):
+    """A list whose cursor the screen moves, so that the keys stay where they are."""
+
+
 class FramedScreen(Screen[None]):
     """A screen with a line of places, a line of context and a status line."""
 
     TITLE_WORD = ""
+    BINDINGS: ClassVar[list[BindingType]] = [
+        Binding("1", "app.go('find')", "Find", show=False),
+        Binding("2", "app.go('log')", "Log", show=False),
+        Binding("3", "app.go('review')", "What shifted", show=False),
+        Binding("w", "app.pick_who", "For whom", show=False),
+        Binding("question_mark", "app.show_keys", "Keys", show=False),
+        Binding("q", "app.quit", "Leave", show=False),
+    ]
     shared: reactive[Shared] = reactive(Shared())
 
     def compose(self) -> ComposeResult:
@@ -48,27 +63,41 @@ class FramedScreen(Screen[None]):
     def on_screen_resume(self) -> None:
         """Show the shared state as it is now."""
         self.shared = self.cuebook.shared
+        self.show_line()
 
-    def watch_shared(self, shared: Shared) -> None:
+    def watch_shared(self) -> None:
         """Show for whom, which task, which cue."""
+        self.show_line()
+
+    def show_line(self) -> None:
+        """Show the shared state in the line of context."""
         if self.is_mounted:
-            self.query_one("#context", Static).update(Text(shared.line))
+            self.query_one("#context", Static).update(Content(self.shared.line))
 
     def say(self, words: str) -> None:
         """Show what just happened in the status line."""
-        self.query_one("#status", Static).update(Text(words))
+        self.query_one("#status", Static).update(Content(words))
+
+    def run_job(self, job: Callable[[], Any], group: str) -> None:
+        """Run a job in a thread; it posts its message here. A newer one of its group wins."""
+        self.run_worker(
+            lambda: attempt(job, self.post_message),
+            thread=True,
+            exclusive=True,
+            group=group,
+            exit_on_error=False,
+        )
 
     def on_work_failed(self, message: WorkFailed) -> None:
-        """Say what could not be done; long words go into a box that scrolls."""
+        """Say what could not be done in a box that scrolls."""
         message.stop()
+        self.say("That did not work.")
         self.cuebook.show_error(message.error)
 
-    def _name_places(self) -> Text:
-        line = Text()
+    def _name_places(self) -> Content:
+        parts: list[tuple[str, str]] = []
         for key, name in PLACES:
             is_here = name == self.TITLE_WORD
-            line.append(f"{key} ", style="bold" if is_here else "")
-            line.append(f"[{name}]" if is_here else name, style="bold" if is_here else "")
-            line.append("   ")
-        line.append("F1 Keys   F10 Leave")
-        return line
+            shown = f"{key} [{name}]" if is_here else f"{key} {name}"
+            parts += [(shown, "bold $primary" if is_here else ""), ("   ", "")]
+        return Content.assemble(*parts, "F1 Keys   F10 Leave")

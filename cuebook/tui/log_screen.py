@@ -1,29 +1,47 @@
-"""Log: the card first, then blocks by single keys; on disk before it says so."""
+"""Log: who, what was said, what followed; said to be stored once it is on disk."""
 
 from __future__ import annotations
 
-from typing import ClassVar
+from collections.abc import Callable
+from concurrent.futures import Future
+from dataclasses import replace
+from typing import Any, ClassVar
 
-from rich.text import Text
 from textual.app import ComposeResult
 from textual.binding import Binding, BindingType
 from textual.containers import VerticalScroll
+from textual.content import Content
 from textual.widgets import Static
 
-from cuebook.jobs.last_card import read_last_card
-from cuebook.jobs.log_entries import BlockEntry, LearnerNote, Logged
-from cuebook.jobs.people import list_members
-from cuebook.tui.entry_boxes import MeasureBox, Numbers, PracticeBox, Practised
+from cuebook.errors import CuebookError
+from cuebook.jobs.log_entries import BlockEntry, Logged
+from cuebook.tui.answers import PracticeAnswers
 from cuebook.tui.frame import FramedScreen
-from cuebook.tui.messages import CardRead, UseLogged
+from cuebook.tui.logbook import (
+    Sitting,
+    make_group_measure,
+    make_measure,
+    make_practice,
+    make_same_again,
+)
+from cuebook.tui.measure_box import MeasureBox, Measures, MembersBox
+from cuebook.tui.messages import BlockLogged, CardRead, SessionEnded
+from cuebook.tui.practice_box import PracticeBox
+from cuebook.tui.state import Shared
 from cuebook.tui.workers import attempt
 from cuebook.vocabulary import load_vocabulary
 
 KEYS = (
     "O before any cue   C practice with the cue   A practice without a cue\n"
-    "P straight after, cue off   S same again   N new session   E end it\n"
-    "F5 for whom   F2 find a cue   T task"
+    "P straight after, cue off   L new place or pressure   S same again\n"
+    "T task   D side   N new session   E end session   W for whom   F2 find a cue"
 )
+SHORT_KEYS = (
+    "O before  C with the cue  A no cue  P straight after\n"
+    "L new place  S same again  T task  D side\n"
+    "N new session  E end  W for whom  F2 find"
+)
+MOST_LINES = 200
 
 
 class LogScreen(FramedScreen):
@@ -31,206 +49,223 @@ class LogScreen(FramedScreen):
 
     TITLE_WORD = "Log"
     BINDINGS: ClassVar[list[BindingType]] = [
-        Binding("f5", "app.pick_who", "For whom"),
-        Binding("o", "measure('baseline')", "Before any cue"),
-        Binding("p", "measure('immediate_post')", "Straight after, cue off"),
+        Binding("o", "measure('baseline')", "Before any cue: the opening measure"),
         Binding("c", "practise(True)", "Practice with the cue"),
         Binding("a", "practise(False)", "Practice without a cue"),
+        Binding("p", "measure('immediate_post')", "Straight after, cue off"),
+        Binding("l", "measure('transfer')", "New place or pressure"),
         Binding("s", "same_again", "Same again"),
+        Binding("t", "app.pick_task", "Task"),
+        Binding("d", "app.turn_side", "Side"),
         Binding("n", "new_session", "New session"),
         Binding("e", "end_session", "End the session"),
-        Binding("t", "next_task", "Task"),
+        Binding("up", "scroll_card(-1)", "Read the card"),
+        Binding("down", "scroll_card(1)", "Read the card"),
+        Binding("pageup", "scroll_lines(-1)", "Read what was logged"),
+        Binding("pagedown", "scroll_lines(1)", "Read what was logged"),
     ]
 
     def __init__(self) -> None:
         super().__init__()
-        self._members: tuple[str, ...] = ()
-        self._session: str | None = None
-        self._last: BlockEntry | None = None
-        self._written: list[str] = []
-        self._metric: str | None = None
-        self._seen: str | None = None
+        self._sitting: Sitting | None = None
+        self._lines: list[str] = []
 
     def compose_panels(self) -> ComposeResult:
         """Lay out card, what was written, keys."""
-        yield Static("", id="card")
-        with VerticalScroll(id="written"):
+        with VerticalScroll(id="card", can_focus=False):
+            yield Static("", id="card_lines")
+        yield Static("", id="saying")
+        with VerticalScroll(id="written", can_focus=False):
             yield Static("", id="lines")
-        yield Static(Text(KEYS), id="keys")
+        yield Static(Content(KEYS), id="keys")
+
+    def on_resize(self) -> None:
+        """Name the keys as fully as there is room."""
+        is_narrow = self.app.has_class("narrow")
+        self.query_one("#keys", Static).update(Content(SHORT_KEYS if is_narrow else KEYS))
 
     def on_screen_resume(self) -> None:
-        """Show the card of whoever it is for; ask for whom if nobody is picked."""
+        """Say what comes next."""
         super().on_screen_resume()
-        self.query_one("#written").can_focus = False
+        shared = self.shared
+        if shared.who is None:
+            self._put_card("Nobody is picked yet. F5 picks a learner or a group, or adds one.")
+            self.say("F5: for whom.")
+        elif self._sitting is not None and shared.cue is not None:
+            self.say("C logs practice with this cue.")
+
+    def watch_shared(self) -> None:
+        """Read the card of somebody who has just been picked."""
+        super().watch_shared()
+        if self.is_mounted:
+            self.query_one("#saying", Static).update(describe_saying(self.shared))
         who = self.shared.who
-        if who is None:
-            self.query_one("#card", Static).update("Nobody picked yet. F5: for whom.")
-            self.say("F5 picks a learner or a group.")
-        elif who.code != self._seen:
-            self._seen, self._session, self._last, self._written = who.code, None, None, []
-            self.query_one("#lines", Static).update("")
-            self._read_card()
-        self._metric = self.shared.metric or self._metric
-
-    def _read_card(self) -> None:
-        shared, who = self.shared, self.shared.who
-        if who is None:
+        if who is None or (self._sitting is not None and self._sitting.who.code == who.code):
             return
-
-        def job() -> CardRead:
-            if who.is_group:
-                members = list_members(shared.location, who.code)
-                return CardRead(read_last_card(shared.location, group=who.code), members)
-            return CardRead(read_last_card(shared.location, learner=who.code), ())
-
-        self.run_worker(
-            lambda: attempt(job, self.post_message),
-            thread=True,
-            exclusive=True,
-            group="card",
-            exit_on_error=False,
-        )
+        self._sitting, self._lines = None, []
+        self._put_card(f"Reading the card of {who.code} …")
+        self._put_lines()
+        jobs = self.cuebook.jobs
+        self.run_job(lambda: CardRead(who.code, jobs.read_card(who)), "card")
 
     def on_card_read(self, message: CardRead) -> None:
         """Show the card; the opening measure comes before any cue."""
         message.stop()
-        self._members = (message.card.who and message.members) or ()
-        self.query_one("#card", Static).update(Text("\n".join(message.card.lines)))
-        self.say("O takes the opening measure.")
+        who = self.shared.who
+        if who is None or who.code != message.who:
+            return
+        card = message.card
+        self._sitting = Sitting(who, card.members)
+        self._put_card("\n".join(card.last.lines))
+        self._lines = ["Today so far:", *card.open_lines[1:]] if card.open_lines else []
+        self._put_lines()
+        self.say(f"{card.last.opening} O takes it.")
 
     def action_measure(self, phase: str) -> None:
         """Ask for the numbers of a measure, cue off."""
-        if not self._is_ready():
+        sitting = self._get_ready()
+        if sitting is None:
             return
-        if self._members:
-            self._log(self._make_entry(phase, LearnerNote()))
-            self.say("Noted for the group. Values: pick one learner with F5.")
+        label = load_vocabulary().label("phase", phase)
+        title, metric = f"{label[:1].upper()}{label[1:]}", self.shared.metric
+        if sitting.members:
+            box: MeasureBox | MembersBox = MembersBox(
+                title, metric, sitting.members, sitting.absent
+            )
+        else:
+            box = MeasureBox(title, metric)
+        self.app.push_screen(box, lambda measures: self._store_measures(sitting, phase, measures))
+
+    def _store_measures(self, sitting: Sitting, phase: str, measures: Measures | None) -> None:
+        if measures is None:
             return
-        title = load_vocabulary().label("phase", phase)
-        box = MeasureBox(f"{title[:1].upper()}{title[1:]}", self._metric)
-
-        def store(numbers: Numbers | None) -> None:
-            if numbers is None:
-                return
-            if numbers.values:
-                self._metric = next(iter(numbers.values))
-            self._log(self._make_entry(phase, LearnerNote(values=numbers.values)))
-
-        self.app.push_screen(box, store)
+        shared = self.shared
+        if sitting.members:
+            entry = make_group_measure(sitting, shared, phase, measures.by_member)
+        else:
+            entry = make_measure(sitting, shared, phase, measures.values)
+        self._log(entry)
+        self.cuebook.share(replace(shared, metric=measures.metric))
 
     def action_practise(self, with_cue: bool) -> None:  # noqa: FBT001 - from a key binding
         """Ask what happened in practice, with the chosen cue or without one."""
-        if not self._is_ready():
+        sitting = self._get_ready()
+        if sitting is None:
             return
-        if with_cue and self.shared.cue is None:
+        shared = self.shared
+        if with_cue and shared.cue is None:
             self.say("No cue is chosen. F2 finds one; Enter there takes it.")
             return
-        title = f"Practice: {self.shared.cue}" if with_cue else "Practice without a cue"
-        box = PracticeBox(title, self._members, has_cue=with_cue)
+        title = f"Practice: {shared.cue_words}" if with_cue else "Practice without a cue"
+        cue = shared.cue if with_cue else None
 
-        def store(practised: Practised | None) -> None:
-            if practised is None:
+        def store(answers: PracticeAnswers | None) -> None:
+            if answers is None:
                 return
-            absent = dict.fromkeys(practised.absent_codes, LearnerNote(present="absent"))
-            entry = self._make_entry("acquisition", practised.note)
-            self._log(
-                BlockEntry(
-                    task=entry.task,
-                    learner=entry.learner,
-                    group=entry.group,
-                    except_codes=practised.except_codes,
-                    phase="acquisition",
-                    cue=self.shared.cue if with_cue else None,
-                    session=entry.session,
-                    note=entry.note,
-                    notes=absent,
-                )
-            )
+            entry = make_practice(sitting, shared, answers, cue)
+            self._sitting = replace(sitting, absent=answers.absent, last_practice=entry)
+            self._log(entry)
 
-        self.app.push_screen(box, store)
+        self.app.push_screen(PracticeBox(title, sitting.start_answers(has_cue=with_cue)), store)
 
     def action_same_again(self) -> None:
-        """Log the last practice once more."""
-        if self._last is None:
-            self.say("Nothing logged yet to do again.")
+        """Log the last practice once more, without its answers."""
+        if self._sitting is None or self._sitting.last_practice is None:
+            self.say("Nothing practised here yet that could be done again. C or A first.")
             return
-        self._log(self._last)
+        self._log(make_same_again(self._sitting.last_practice))
 
     def action_new_session(self) -> None:
         """Begin a new session with the next entry."""
-        self._session = "new"
-        self._last = None
+        if self._sitting is None:
+            self.say("For whom? F5 picks a learner or a group.")
+            return
+        self.cuebook.store.begin_session(self._sitting.who.code)
+        self._sitting = replace(self._sitting, absent=frozenset(), last_practice=None)
         self.say("The next entry begins a new session.")
 
     def action_end_session(self) -> None:
-        """End the session that was logged in."""
-        session = self._session
-        if session in {None, "new"}:
-            self.say("No session is open here yet.")
+        """End the session that is open."""
+        if self._sitting is None:
+            self.say("For whom? F5 picks a learner or a group.")
             return
+        who = self._sitting.who
+        self._wait_for(self.cuebook.store.end_session(who), lambda _: SessionEnded(who.code))
 
-        def job() -> None:
-            from cuebook.jobs.log_use import end_session  # noqa: PLC0415
+    def on_session_ended(self, message: SessionEnded) -> None:
+        """Say that the end is on disk."""
+        message.stop()
+        self._lines.append(f"Session of {message.who} ended.")
+        self._put_lines()
+        self.say("Session ended. The next entry begins a new one.")
 
-            end_session(self.shared.location, session or "")
+    def action_scroll_card(self, direction: int) -> None:
+        """Read on or back in the card."""
+        self.query_one("#card").scroll_relative(y=2 * direction, animate=False)
 
-        self.run_worker(lambda: attempt(job, self.post_message), thread=True, exit_on_error=False)
-        self._session = None
-        self.say("Session ended.")
+    def action_scroll_lines(self, direction: int) -> None:
+        """Read back or on in what was written."""
+        self.query_one("#written").scroll_relative(y=4 * direction, animate=False)
 
-    def action_next_task(self) -> None:
-        """Ask for the task."""
-        self.cuebook.pick_task()
+    def log_entry(self, entry: BlockEntry) -> None:
+        """Store an entry that was made elsewhere."""
+        self._log(entry)
 
-    def _is_ready(self) -> bool:
+    def _get_ready(self) -> Sitting | None:
+        """Return whom the next entry is for; say what is missing if it cannot be made."""
         if self.shared.who is None:
             self.say("For whom? F5 picks a learner or a group.")
-            return False
-        if self.shared.task is None:
+        elif self.shared.task is None:
             self.say("Which task? T picks one; a cue from F2 brings its own.")
-            return False
-        return True
-
-    def _make_entry(self, phase: str, note: LearnerNote) -> BlockEntry:
-        who = self.shared.who
-        if who is None:  # pragma: no cover - _is_ready has asked
-            raise RuntimeError
-        return BlockEntry(
-            task=self.shared.task or "",
-            learner=None if who.is_group else who.code,
-            group=who.code if who.is_group else None,
-            phase=phase,
-            session=self._session,
-            note=note,
-        )
+        elif self._sitting is None:
+            self.say("The card is still being read.")
+        return None if self.shared.task is None else self._sitting
 
     def _log(self, entry: BlockEntry) -> None:
-        location = self.shared.location
-        if entry.phase == "acquisition":
-            self._last = entry
+        who = entry.learner or entry.group or ""
+        self._wait_for(self.cuebook.store.log(entry), lambda logged: BlockLogged(who, logged))
 
-        def job() -> UseLogged:
-            from cuebook.jobs.log_use import log_block  # noqa: PLC0415
-
-            return UseLogged(log_block(location, entry))
-
+    def _wait_for(self, stored: Future[Any], tell: Callable[[Any], Any]) -> None:
+        """Wait in a thread until something is on disk, then say so; nothing is dropped."""
         self.say("Storing …")
-        # Entries keep their order: one worker at a time, none is dropped.
+
+        def job() -> Any:
+            try:
+                return tell(stored.result())
+            except CuebookError as error:
+                hint = f"{error.hint} Nothing of this entry is stored.".strip()
+                raise CuebookError(error.message, hint) from error
+
         self.run_worker(
-            lambda: self.cuebook.store_in_turn(lambda: attempt(job, self.post_message)),
+            lambda: attempt(job, self.post_message),
             thread=True,
             group="store",
             exit_on_error=False,
         )
 
-    def on_use_logged(self, message: UseLogged) -> None:
+    def on_block_logged(self, message: BlockLogged) -> None:
         """Say what is on disk now."""
         message.stop()
-        self._session = message.logged.session_id
-        self._written += _tell(message.logged)
-        self.query_one("#lines", Static).update(Text("\n".join(self._written[-60:])))
-        self.query_one("#written", VerticalScroll).scroll_end(animate=False)
-        self.say("Stored.")
+        if self.shared.who is not None and self.shared.who.code == message.who:
+            self._lines += _tell(message.logged)
+            self._put_lines()
+        self.say(f"Stored for {message.who}.")
+
+    def _put_card(self, words: str) -> None:
+        self.query_one("#card_lines", Static).update(Content(words))
+        self.query_one("#card").scroll_home(animate=False)
+
+    def _put_lines(self) -> None:
+        self.query_one("#lines", Static).update(Content("\n".join(self._lines[-MOST_LINES:])))
+        self.query_one("#written").scroll_end(animate=False)
+
+
+def describe_saying(shared: Shared) -> Content:
+    """Return the words to say, on a line of their own, with their caution first."""
+    if shared.cue is None:
+        return Content("")
+    parts = [(f"! {shared.cue_caution}\n", "bold $warning")] if shared.cue_caution else []
+    return Content.assemble(*parts, (f"  {shared.cue_words}", "bold $primary"))
 
 
 def _tell(logged: Logged) -> list[str]:

@@ -1,4 +1,4 @@
-"""Facts that have happened, as the screens tell one another."""
+"""Facts that have happened, as work in the background tells the screens."""
 
 from __future__ import annotations
 
@@ -9,9 +9,44 @@ from textual.message import Message
 
 from cuebook.errors import CuebookError
 from cuebook.jobs.find_cue import FoundCues
-from cuebook.jobs.last_card import LastCard
 from cuebook.jobs.log_entries import Logged
+from cuebook.jobs.people import PersonLine
 from cuebook.jobs.review_stored import QuestionLine, StoredReview
+from cuebook.tui.ports import Card
+
+
+class PeopleRead(Message):
+    """Who can be picked is known."""
+
+    def __init__(self, people: tuple[PersonLine, ...]) -> None:
+        super().__init__()
+        self.people = people
+
+
+class MembersRead(Message):
+    """The members of a group are known."""
+
+    def __init__(self, group: str, members: tuple[str, ...]) -> None:
+        super().__init__()
+        self.group = group
+        self.members = members
+
+
+class PersonAdded(Message):
+    """A learner or a group is on disk."""
+
+    def __init__(self, person: PersonLine) -> None:
+        super().__init__()
+        self.person = person
+
+
+class ConsentNoted(Message):
+    """An answer about rankings is on disk."""
+
+    def __init__(self, code: str, answer: str) -> None:
+        super().__init__()
+        self.code = code
+        self.answer = answer
 
 
 class CuesFound(Message):
@@ -26,18 +61,27 @@ class CuesFound(Message):
 class CardRead(Message):
     """The card of a learner or group has been read."""
 
-    def __init__(self, card: LastCard, members: tuple[str, ...]) -> None:
+    def __init__(self, who: str, card: Card) -> None:
         super().__init__()
+        self.who = who
         self.card = card
-        self.members = members
 
 
-class UseLogged(Message):
-    """Something is on disk."""
+class BlockLogged(Message):
+    """A block is on disk."""
 
-    def __init__(self, logged: Logged) -> None:
+    def __init__(self, who: str, logged: Logged) -> None:
         super().__init__()
+        self.who = who
         self.logged = logged
+
+
+class SessionEnded(Message):
+    """The end of a session is on disk."""
+
+    def __init__(self, who: str) -> None:
+        super().__init__()
+        self.who = who
 
 
 class QuestionsRead(Message):
@@ -58,7 +102,7 @@ class RankingRead(Message):
 
 
 class RankingMade(Message):
-    """A worker has fitted a question anew."""
+    """A question has been ranked anew."""
 
     def __init__(self, question: QuestionLine, document: Mapping[str, Any]) -> None:
         super().__init__()

@@ -2,67 +2,83 @@
 
 from __future__ import annotations
 
-import json
-import subprocess
-import sys
-from collections.abc import Callable, Mapping
-from pathlib import Path
+from collections.abc import Callable
+from concurrent.futures import Future, ThreadPoolExecutor
+from dataclasses import replace
 from typing import Any
 
 from cuebook.errors import CuebookError
-from cuebook.jobs.review_request import ReviewRequest
+from cuebook.jobs.log_entries import BlockEntry, Logged
+from cuebook.jobs.people import PersonLine
+from cuebook.tui.fitting import NoLongerWantedError
 from cuebook.tui.messages import WorkFailed
+from cuebook.tui.ports import LibraryJobs
 
-FIT_TIMEOUT_S = 300
+NEW = "new"
 
 
 def attempt(job: Callable[[], Any], post: Callable[[Any], Any]) -> None:
-    """Run a job and post the message it gives, or the error it met."""
+    """Run a job and post the message it gives, or what went wrong; nothing escapes."""
     try:
         message = job()
-    except CuebookError as error:
-        post(WorkFailed(error))
+    except NoLongerWantedError:
         return
+    except CuebookError as error:
+        message = WorkFailed(error)
+    except Exception as fault:  # noqa: BLE001 - a fault in the background must be seen
+        message = WorkFailed(describe_fault(fault))
     if message is not None:
         post(message)
 
 
-def fit_apart(location: str | Path | None, request: ReviewRequest) -> Mapping[str, Any]:
-    """Fit a question in a process of its own, so that the screen's thread stays free.
+def describe_fault(fault: BaseException) -> CuebookError:
+    """Return a fault of the program itself in words; its text may hold what a user typed."""
+    return CuebookError(
+        f"Cuebook met a fault of its own ({type(fault).__name__}).",
+        "What was said to be stored is stored. Try again; if it comes back, please report it.",
+    )
 
-    Raises
-    ------
-    CuebookError : what the other process said.
+
+class StoreLine:
+    """Stores entries one after the other, in the order they were made, each in its session.
+
+    Only its own thread reads and sets which session somebody's entries go to, so that entries
+    made quickly one after the other never begin two sessions. What was handed over is stored
+    even if the screens are left at once.
     """
-    command = [sys.executable, "-m", "cuebook", "review", "--json", "--metric", request.metric]
-    for option, value in (
-        ("--task", request.task),
-        ("--contrast", request.contrast),
-        ("--better", request.better),
-        ("--age-band", request.age_band),
-        ("--background", request.background),
-        ("--library", None if location is None else str(location)),
-    ):
-        if value is not None:
-            command += [option, value]
-    try:
-        done = subprocess.run(  # noqa: S603 - our own program, with words of our own lists
-            command, capture_output=True, text=True, timeout=FIT_TIMEOUT_S, check=False
-        )
-    except subprocess.TimeoutExpired as error:
-        raise CuebookError("The ranking took too long.", "Try it from the command line.") from error
-    if done.returncode:
-        raise _read_error(done.stderr)
-    document: Mapping[str, Any] = json.loads(done.stdout)
-    return document
 
+    def __init__(self, jobs: LibraryJobs) -> None:
+        self._jobs = jobs
+        self._sessions: dict[str, str] = {}
+        self._thread = ThreadPoolExecutor(max_workers=1, thread_name_prefix="store")
 
-def _read_error(text: str) -> CuebookError:
-    for line in reversed(text.splitlines()):
-        try:
-            said = json.loads(line)
-        except ValueError:
-            continue
-        if isinstance(said, dict) and "message" in said:
-            return CuebookError(str(said["message"]), str(said.get("hint", "")))
-    return CuebookError("The ranking could not be made.", "Try: cuebook review")
+    def log(self, entry: BlockEntry) -> Future[Logged]:
+        """Hand over a block."""
+        return self._thread.submit(self._log, entry)
+
+    def begin_session(self, code: str) -> None:
+        """Let the next entry of somebody begin a new session."""
+        self._thread.submit(self._sessions.__setitem__, code, NEW)
+
+    def end_session(self, who: PersonLine) -> Future[None]:
+        """Hand over that a session is over."""
+        return self._thread.submit(self._end, who)
+
+    def close(self) -> None:
+        """Wait until everything handed over is stored."""
+        self._thread.shutdown(wait=True)
+
+    def _log(self, entry: BlockEntry) -> Logged:
+        code = entry.learner or entry.group or ""
+        logged = self._jobs.log_block(replace(entry, session=self._sessions.get(code)))
+        self._sessions[code] = logged.session_id
+        return logged
+
+    def _end(self, who: PersonLine) -> None:
+        session = self._sessions.get(who.code)
+        if session in {None, NEW}:
+            session = self._jobs.find_open_session(who)
+        if session is None:
+            raise CuebookError(f"No session of {who.code} is open.", "The next entry begins one.")
+        self._jobs.end_session(session)
+        self._sessions.pop(who.code, None)

@@ -2,8 +2,12 @@
 
 from __future__ import annotations
 
+from contextlib import suppress
+
 from textual.app import App
+from textual.events import Paste
 from textual.pilot import Pilot
+from textual.worker import WorkerCancelled, WorkerFailed
 
 
 def read_screen(app: App[None]) -> str:
@@ -14,14 +18,24 @@ def read_screen(app: App[None]) -> str:
 
 async def settle(pilot: Pilot[None]) -> None:
     """Wait until no worker runs and every message has been handled."""
-    for _ in range(3):
-        await pilot.app.workers.wait_for_complete()
+    await pilot.pause()
+    while running := [worker for worker in pilot.app.workers if not worker.is_finished]:
+        for worker in running:
+            with suppress(WorkerCancelled, WorkerFailed):
+                await worker.wait()
         await pilot.pause()
+    await pilot.pause()
 
 
 async def press(pilot: Pilot[None], *keys: str) -> None:
     """Press keys, one after the other, and wait for what they started."""
     await pilot.press(*keys)
+    await settle(pilot)
+
+
+async def paste(pilot: Pilot[None], text: str) -> None:
+    """Put text into the field that has the keys, as a terminal pastes it."""
+    pilot.app.post_message(Paste(text))
     await settle(pilot)
 
 
