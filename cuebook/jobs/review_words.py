@@ -60,10 +60,8 @@ def _describe_practice_alone(document: Mapping[str, Any]) -> str:
     alone = document.get("practice_alone")
     if not alone:
         return "Practice alone: not known well enough to be the line to beat; cue against cue."
-    return (
-        f"Practice alone: {format_number(alone['effect'])} "
-        f"(95 %: {format_number(alone['low95'])} to {format_number(alone['high95'])})."
-    )
+    unit = f" {document['display_unit']}" if document.get("display_unit") else ""
+    return f"Practice alone: {format_effect(alone)} (95 %: {format_interval(alone)}){unit}."
 
 
 def _describe_worthwhile(document: Mapping[str, Any]) -> str:
@@ -83,9 +81,11 @@ def _describe_scale(document: Mapping[str, Any]) -> str:
     line = "the change with practice alone"
     if document.get("reference") != "practice_alone":
         line = "the mean of the cues"
-    unit = document.get("unit") or ""
-    scale = "on the log scale" if document.get("transform") == "log" else unit
-    return f"Numbers: difference from {line}{f', {scale}' if scale else ''}; plus is better."
+    unit = document.get("display_unit") or ""
+    better = {"higher": "more is better", "lower": "less is better"}.get(
+        str(document.get("better")), "plus is nearer to the target"
+    )
+    return f"Numbers: difference from {line}{f', in {unit}' if unit else ''}; {better}."
 
 
 def _describe_table(cues: Sequence[Mapping[str, Any]]) -> Iterator[str]:
@@ -122,7 +122,7 @@ def _list_cells(cue: Mapping[str, Any]) -> tuple[str, ...]:
         str(cue.get("sign") or "?"),
         str(cue["cue"]),
         words,
-        format_number(cue["effect"]),
+        format_effect(cue),
         format_interval(cue),
         format_chance(cue["p_better"]),
         f"{cue['uses']}/{cue['learners']}",
@@ -131,9 +131,25 @@ def _list_cells(cue: Mapping[str, Any]) -> tuple[str, ...]:
     )
 
 
-def format_interval(cue: Mapping[str, Any]) -> str:
-    """Return the 95 % interval in words."""
-    return f"{format_number(cue['low95'])} to {format_number(cue['high95'])}"
+def get_shown(line: Mapping[str, Any], name: str) -> float | None:
+    """Return a number in the unit a reader knows: per cent for a log metric, else its own."""
+    shown: float | None = line.get(f"{name}_display")
+    if shown is None:
+        shown = line.get(name)
+    return shown
+
+
+def format_effect(line: Mapping[str, Any]) -> str:
+    """Return an effect in the unit a reader knows."""
+    return format_number(get_shown(line, "effect"))
+
+
+def format_interval(line: Mapping[str, Any]) -> str:
+    """Return the 95 % interval in the unit a reader knows, the smaller end first."""
+    ends = [end for end in (get_shown(line, "low95"), get_shown(line, "high95")) if end is not None]
+    if len(ends) < 2:
+        return "–"
+    return f"{format_number(min(ends))} to {format_number(max(ends))}"
 
 
 def format_chance(chance: float | None) -> str:
@@ -153,7 +169,7 @@ def _describe_blocks(cues: Sequence[Mapping[str, Any]]) -> Iterator[str]:
             yield f"      {cue['first_words']}"
         people = "learner" if cue["learners"] == 1 else "learners"
         yield (
-            f"      {format_number(cue['effect'])} ({format_interval(cue)}), "
+            f"      {format_effect(cue)} ({format_interval(cue)}), "
             f"chance {format_chance(cue['p_better'])}"
         )
         yield (
