@@ -19,7 +19,7 @@ from cuebook.tui.frame import FramedScreen
 from cuebook.tui.key_list import list_keys
 from cuebook.tui.log_screen import LogScreen
 from cuebook.tui.logbook import make_referral
-from cuebook.tui.messages import MembersRead, PeopleRead
+from cuebook.tui.messages import MembersRead
 from cuebook.tui.people_app import PeopleApp
 from cuebook.tui.pick_box import Choice, PickBox
 from cuebook.tui.ports import LibraryJobs
@@ -121,10 +121,11 @@ class CuebookApp(PeopleApp):
         """Note of a learner that they were stopped and referred; ask of whom if need be."""
         who, task = self.shared.who, self.shared.task
         if who is None:
-            self._run(lambda: PeopleRead(self.jobs.list_people()), "people")
-            self.tell("Of whom? Pick the learner, then F9 again.")
+            self.tell("Of whom?")
+            self.ask_who(self.note_referred)
         elif task is None:
-            self.tell("In which task? F6 picks it, then F9 again.")
+            self.tell("In which task?")
+            self.ask_task(self.note_referred)
         elif who.is_group:
             self._run(lambda: MembersRead(who.code, self.jobs.list_members(who.code)), "people")
         else:

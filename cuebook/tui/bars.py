@@ -53,11 +53,13 @@ def draw_bar(cue: Mapping[str, Any], scale: BarScale, worthwhile: float | None) 
 
 
 def draw_axis(scale: BarScale, low: str, zero: str, high: str) -> str:
-    """Return the line of labels: both ends, and the line to beat under its own cell if it fits."""
-    cells = list(low.ljust(scale.width - len(high)) + high)[: scale.width]
-    begin = scale.place(0.0) - len(zero) // 2
-    begin = min(max(begin, 0), scale.width - len(zero))
-    around = cells[max(begin - 1, 0) : begin + len(zero) + 1]
-    if begin >= 0 and not "".join(around).strip():
-        cells[begin : begin + len(zero)] = zero
+    """Return the line of labels: the line to beat at its own cell, and the ends where they fit."""
+    at = scale.place(0.0)
+    label = f"{ZERO} {zero}" if at + len(zero) + 2 <= scale.width else f"{zero} {ZERO}"
+    begin = at if label.startswith(ZERO) else max(at - len(zero) - 1, 0)
+    cells = list((" " * begin + label).ljust(scale.width)[: scale.width])
+    if begin > len(low):
+        cells[: len(low)] = low
+    if begin + len(label) < scale.width - len(high):
+        cells[scale.width - len(high) :] = high
     return "".join(cells)

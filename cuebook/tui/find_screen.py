@@ -17,7 +17,8 @@ from cuebook.jobs.find_cue import FoundCues
 from cuebook.library.lookup import Hit
 from cuebook.tui.boxes import make_field
 from cuebook.tui.find_words import describe_detail, describe_row, describe_understood
-from cuebook.tui.frame import FramedScreen, Listing
+from cuebook.tui.frame import FramedScreen
+from cuebook.tui.listing import Listing
 from cuebook.tui.messages import CuesFound
 from cuebook.tui.ports import MOST_CUES
 from cuebook.tui.state import Shared
@@ -61,6 +62,11 @@ class FindScreen(FramedScreen):
         """Take the keys and say what to do."""
         self._field.focus()
         self.say(OPENING)
+
+    def on_screen_resume(self) -> None:
+        """Take the keys again."""
+        super().on_screen_resume()
+        self._field.focus()
 
     def watch_shared(self) -> None:
         """Look up the same words for somebody else or another task."""

@@ -39,12 +39,7 @@ def fit_apart(location: str | Path | None, request: ReviewRequest) -> Mapping[st
         text=True,
         encoding="utf-8",
     )
-    try:
-        told, complained = _wait(fitting, _make_wanted())
-    finally:
-        if fitting.poll() is None:
-            fitting.kill()
-            fitting.communicate()
+    told, complained = wait_for(fitting, _make_wanted())
     if fitting.returncode:
         raise _read_error(complained)
     document: Mapping[str, Any] = json.loads(told)
@@ -77,16 +72,22 @@ def _make_wanted() -> Callable[[], bool]:
     return lambda: not worker.is_cancelled
 
 
-def _wait(fitting: subprocess.Popen[str], is_wanted: Callable[[], bool]) -> tuple[str, str]:
+def wait_for(fitting: subprocess.Popen[str], is_wanted: Callable[[], bool]) -> tuple[str, str]:
+    """Return what a process said; end it if it is no longer wanted or takes too long."""
     until = time.monotonic() + FIT_TIMEOUT_S
-    while time.monotonic() < until:
-        if not is_wanted():
-            raise NoLongerWantedError("No longer wanted.")
-        try:
-            return fitting.communicate(timeout=POLL_S)
-        except subprocess.TimeoutExpired:
-            continue
-    raise CuebookError("The ranking took too long.", "Try it from the command line.")
+    try:
+        while time.monotonic() < until:
+            if not is_wanted():
+                raise NoLongerWantedError("No longer wanted.")
+            try:
+                return fitting.communicate(timeout=POLL_S)
+            except subprocess.TimeoutExpired:
+                continue
+        raise CuebookError("The ranking took too long.", "Try it from the command line.")
+    finally:
+        if fitting.poll() is None:
+            fitting.kill()
+            fitting.communicate()
 
 
 def _read_error(text: str) -> CuebookError:

@@ -10,7 +10,7 @@ from textual.binding import Binding, BindingType
 from textual.content import Content
 from textual.reactive import reactive
 from textual.screen import Screen
-from textual.widgets import OptionList, Static
+from textual.widgets import Static
 
 from cuebook.tui.messages import WorkFailed
 from cuebook.tui.state import Shared
@@ -20,10 +20,6 @@ if TYPE_CHECKING:
     from cuebook.tui.app import CuebookApp
 
 PLACES = (("F2", "Find"), ("F3", "Log"), ("F4", "What shifted"))
-
-
-class Listing(OptionList, can_focus=False):
-    """A list whose cursor the screen moves, so that the keys stay where they are."""
 
 
 class FramedScreen(Screen[None]):

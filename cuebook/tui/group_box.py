@@ -17,7 +17,7 @@ from textual.widgets.option_list import Option
 from cuebook.errors import CuebookError
 from cuebook.jobs.people import check_code
 from cuebook.tui.boxes import make_field
-from cuebook.tui.frame import Listing
+from cuebook.tui.listing import Listing
 from cuebook.tui.pick_box import MOST_ROWS
 
 

@@ -34,12 +34,12 @@ from cuebook.vocabulary import load_vocabulary
 KEYS = (
     "O before any cue   C practice with the cue   A practice without a cue\n"
     "P straight after, cue off   L new place or pressure   S same again\n"
-    "T task   D side   N new session   E end session   W for whom   F2 find a cue"
+    "T task   D side   N end, new session   W for whom   F2 find a cue"
 )
 SHORT_KEYS = (
     "O before  C with the cue  A no cue  P straight after\n"
     "L new place  S same again  T task  D side\n"
-    "N new session  E end  W for whom  F2 find"
+    "N end, new session  W for whom  F2 find"
 )
 MOST_LINES = 200
 
@@ -57,8 +57,7 @@ class LogScreen(FramedScreen):
         Binding("s", "same_again", "Same again"),
         Binding("t", "app.pick_task", "Task"),
         Binding("d", "app.turn_side", "Side"),
-        Binding("n", "new_session", "New session"),
-        Binding("e", "end_session", "End the session"),
+        Binding("n", "end_session", "End the session; the next entry begins a new one"),
         Binding("up", "scroll_card(-1)", "Read the card"),
         Binding("down", "scroll_card(1)", "Read the card"),
         Binding("pageup", "scroll_lines(-1)", "Read what was logged"),
@@ -175,29 +174,25 @@ class LogScreen(FramedScreen):
             return
         self._log(make_same_again(self._sitting.last_practice))
 
-    def action_new_session(self) -> None:
-        """Begin a new session with the next entry."""
-        if self._sitting is None:
-            self.say("For whom? F5 picks a learner or a group.")
-            return
-        self.cuebook.store.begin_session(self._sitting.who.code)
-        self._sitting = replace(self._sitting, absent=frozenset(), last_practice=None)
-        self.say("The next entry begins a new session.")
-
     def action_end_session(self) -> None:
-        """End the session that is open."""
-        if self._sitting is None:
+        """End the session that is open; the next entry begins a new one."""
+        sitting = self._sitting
+        if sitting is None:
             self.say("For whom? F5 picks a learner or a group.")
             return
-        who = self._sitting.who
-        self._wait_for(self.cuebook.store.end_session(who), lambda _: SessionEnded(who.code))
+        who = sitting.who
+        self._sitting = replace(sitting, absent=frozenset(), last_practice=None)
+        ended = self.cuebook.store.end_session(who)
+        self._wait_for(ended, lambda was_open: SessionEnded(who.code, was_open=was_open))
 
     def on_session_ended(self, message: SessionEnded) -> None:
         """Say that the end is on disk."""
         message.stop()
-        self._lines.append(f"Session of {message.who} ended.")
-        self._put_lines()
-        self.say("Session ended. The next entry begins a new one.")
+        if message.was_open:
+            self._lines.append(f"Session of {message.who} ended.")
+            self._put_lines()
+        ended = "Session ended. " if message.was_open else ""
+        self.say(f"{ended}The next entry begins a new session.")
 
     def action_scroll_card(self, direction: int) -> None:
         """Read on or back in the card."""

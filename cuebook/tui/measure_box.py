@@ -18,7 +18,7 @@ from cuebook.errors import CuebookError
 from cuebook.jobs.log_entries import Values
 from cuebook.metrics.registry import load_registry
 from cuebook.tui.boxes import make_field
-from cuebook.tui.frame import Listing
+from cuebook.tui.listing import Listing
 from cuebook.tui.numbers import EXAMPLE, describe_metric, read_numbers
 from cuebook.tui.pick_box import Choice, PickBox
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from typing import Any
 
 from textual.message import Message
@@ -18,9 +18,13 @@ from cuebook.tui.ports import Card
 class PeopleRead(Message):
     """Who can be picked is known."""
 
-    def __init__(self, people: tuple[PersonLine, ...]) -> None:
+    def __init__(
+        self, people: tuple[PersonLine, ...], then: Callable[[], None] | None = None
+    ) -> None:
         super().__init__()
         self.people = people
+        self.then = then
+        """What goes on once somebody is picked; None: nothing."""
 
 
 class MembersRead(Message):
@@ -77,11 +81,12 @@ class BlockLogged(Message):
 
 
 class SessionEnded(Message):
-    """The end of a session is on disk."""
+    """A session is over, on disk; the next entry begins a new one."""
 
-    def __init__(self, who: str) -> None:
+    def __init__(self, who: str, *, was_open: bool) -> None:
         super().__init__()
         self.who = who
+        self.was_open = was_open
 
 
 class QuestionsRead(Message):

@@ -46,12 +46,16 @@ class PeopleApp(App[None]):
     def action_pick_who(self) -> None:
         """Ask for whom, once it is known who there is."""
         if not self.screen.is_modal:
-            self._run(lambda: PeopleRead(self.jobs.list_people()), "people")
+            self.ask_who()
+
+    def ask_who(self, then: Callable[[], None] | None = None) -> None:
+        """Ask for whom; go on with something once somebody is picked."""
+        self._run(lambda: PeopleRead(self.jobs.list_people(), then), "people")
 
     def on_people_read(self, message: PeopleRead) -> None:
         """Show who can be picked."""
         people = {one.code: one for one in message.people}
-        extras = {NEW_LEARNER: "adds a learner", NEW_GROUP: "a group"}
+        extras = {NEW_LEARNER: "adds a learner", NEW_GROUP: "adds a group"}
 
         def take(picked: str | None) -> None:
             if picked == NEW_LEARNER:
@@ -61,6 +65,8 @@ class PeopleApp(App[None]):
                 self.push_screen(GroupBox(learners), self._add_group)
             elif picked is not None:
                 self._take_who(people[picked])
+                if message.then is not None:
+                    message.then()
 
         if not self.screen.is_modal:
             self.push_screen(PickBox("For whom?", list_choices(message.people), extras), take)
@@ -98,8 +104,11 @@ class PeopleApp(App[None]):
 
     def action_pick_task(self) -> None:
         """Ask for the task."""
-        if self.screen.is_modal:
-            return
+        if not self.screen.is_modal:
+            self.ask_task()
+
+    def ask_task(self, then: Callable[[], None] | None = None) -> None:
+        """Ask for the task; go on with something once one is picked."""
         any_task = [Choice("", "any task", is_plain=True)]
         tasks = [Choice(t.slug, t.label, is_plain=True) for t in load_vocabulary().tasks]
 
@@ -107,6 +116,8 @@ class PeopleApp(App[None]):
             if task is not None:
                 picked = replace(self.shared, task=task or None, task_was_picked=bool(task))
                 self.share(picked)
+                if task and then is not None:
+                    then()
 
         self.push_screen(PickBox("Which task?", [*any_task, *tasks]), take)
 

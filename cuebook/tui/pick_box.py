@@ -16,7 +16,7 @@ from textual.widgets import Input, OptionList, Static
 from textual.widgets.option_list import Option
 
 from cuebook.tui.boxes import make_field
-from cuebook.tui.frame import Listing
+from cuebook.tui.listing import Listing
 
 MOST_ROWS = 200
 
@@ -37,13 +37,16 @@ class Choice:
 
 
 def narrow_choices(choices: Sequence[Choice], typed: str) -> tuple[Choice, ...]:
-    """Return the choices that begin with what is typed, then those that hold it."""
+    """Return what is typed in full, then what begins with it, then what holds it."""
     wanted = typed.strip().lower()
-    if not wanted:
-        return tuple(choices)
-    begin = [one for one in choices if one.row.lower().startswith(wanted)]
-    hold = [one for one in choices if wanted in one.row.lower() and one not in begin]
-    return (*begin, *hold)
+
+    def judge(one: Choice) -> int:
+        row = one.row.lower()
+        is_whole = wanted in {row, one.slug.lower(), one.words.lower()}
+        return 0 if is_whole else 1 if row.startswith(wanted) else 2
+
+    fitting = [one for one in choices if wanted in one.row.lower()]
+    return tuple(sorted(fitting, key=judge) if wanted else fitting)
 
 
 class PickBox(ModalScreen[str | None]):

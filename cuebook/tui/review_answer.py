@@ -19,7 +19,7 @@ from cuebook.tui.bars import BarScale, draw_axis, draw_bar, make_scale
 from cuebook.vocabulary import load_vocabulary
 
 INDENT = "    "
-WIDEST_BAR, NARROWEST_BAR = 60, 24
+WIDEST_BAR, NARROWEST_BAR = 60, 34
 ROOM_FOR_NUMBERS = 52
 """Cells that the numbers of a cue need beside its bar."""
 LIKELY = 0.8

@@ -15,7 +15,8 @@ from textual.widgets import OptionList, Static
 from textual.widgets.option_list import Option
 
 from cuebook.jobs.review_stored import QuestionLine
-from cuebook.tui.frame import FramedScreen, Listing
+from cuebook.tui.frame import FramedScreen
+from cuebook.tui.listing import Listing
 from cuebook.tui.messages import QuestionsRead, RankingMade, RankingRead
 from cuebook.tui.pick_box import Choice, PickBox
 from cuebook.tui.review_answer import describe_answer

@@ -56,12 +56,11 @@ class StoreLine:
         """Hand over a block."""
         return self._thread.submit(self._log, entry)
 
-    def begin_session(self, code: str) -> None:
-        """Let the next entry of somebody begin a new session."""
-        self._thread.submit(self._sessions.__setitem__, code, NEW)
+    def end_session(self, who: PersonLine) -> Future[bool]:
+        """Hand over that a session is over, if one is open; the next entry begins a new one.
 
-    def end_session(self, who: PersonLine) -> Future[None]:
-        """Hand over that a session is over."""
+        Tells whether one was open.
+        """
         return self._thread.submit(self._end, who)
 
     def close(self) -> None:
@@ -74,11 +73,11 @@ class StoreLine:
         self._sessions[code] = logged.session_id
         return logged
 
-    def _end(self, who: PersonLine) -> None:
-        session = self._sessions.get(who.code)
-        if session in {None, NEW}:
-            session = self._jobs.find_open_session(who)
+    def _end(self, who: PersonLine) -> bool:
+        session: str | None = self._sessions.get(who.code)
         if session is None:
-            raise CuebookError(f"No session of {who.code} is open.", "The next entry begins one.")
-        self._jobs.end_session(session)
-        self._sessions.pop(who.code, None)
+            session = self._jobs.find_open_session(who)
+        if session not in {None, NEW}:
+            self._jobs.end_session(session or "")
+        self._sessions[who.code] = NEW
+        return session not in {None, NEW}

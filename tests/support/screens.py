@@ -16,6 +16,11 @@ def read_screen(app: App[None]) -> str:
     return "\n".join(strip.text.rstrip() for strip in strips)
 
 
+def read_widget(app: App[None], selector: str) -> str:
+    """Return all the text of one widget, also what is scrolled out of sight."""
+    return str(app.screen.query_one(selector).render())
+
+
 async def settle(pilot: Pilot[None]) -> None:
     """Wait until no worker runs and every message has been handled."""
     await pilot.pause()
@@ -44,3 +49,17 @@ async def type_text(pilot: Pilot[None], text: str) -> None:
     names = {" ": "space", ".": "full_stop", "_": "underscore", "-": "minus", ";": "semicolon"}
     await pilot.press(*(names.get(letter, letter) for letter in text))
     await settle(pilot)
+
+
+async def pick_who(pilot: Pilot[None], code: str) -> None:
+    """Pick a learner or a group by keys."""
+    await press(pilot, "f5")
+    await paste(pilot, code)
+    await press(pilot, "enter")
+
+
+async def take_first_cue(pilot: Pilot[None], problem: str) -> None:
+    """Look a problem up and take the first cue into the log, by keys."""
+    await press(pilot, "f2")
+    await paste(pilot, problem)
+    await press(pilot, "down", "enter")
