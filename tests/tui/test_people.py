@@ -56,7 +56,6 @@ async def test_adding_somebody_holds_no_key_up(library: Path) -> None:
         await pilot.press("f7", *"shuffles")
         await pilot.pause()
         assert "shuffles" in read_screen(app)
-        assert "Storing …" in read_screen(app)
         jobs.let_go.set()
         await press(pilot, "end")
         assert "New learner:" in read_screen(app)
