@@ -11,6 +11,7 @@ from cuebook.errors import CuebookError
 from cuebook.jobs.review_words import (
     describe_rest,
     format_chance,
+    format_effect,
     format_interval,
     format_number,
 )
@@ -54,29 +55,29 @@ def _describe_line_to_beat(document: Mapping[str, Any], scale: BarScale) -> Iter
     alone, unit = document.get("practice_alone"), _name_unit(document)
     if alone:
         yield (
-            f"Practice alone: {format_number(alone['effect'])}{unit} "
-            f"(95 %: {format_interval(alone)}). Below: the difference from it; plus is better."
+            f"Practice alone: {format_effect(alone)}{unit} (95 %: {format_interval(alone)}). "
+            "Below: the difference from it; to the right is better."
         )
         zero = "practice alone"
     else:
         yield "Practice alone is not known well enough. Below: the difference from the cues' mean."
         zero = "mean of the cues"
-    low, high = format_number(scale.low), format_number(scale.high)
-    yield INDENT + draw_axis(scale, low, zero, high)
+    yield INDENT + draw_axis(scale, "worse", zero, "better")
 
 
 def _describe_legend(document: Mapping[str, Any]) -> Iterator[str]:
     yield "Thick line: 80 %. Thin line: 95 %."
     worthwhile = document.get("worthwhile")
     if worthwhile is not None:
-        least = f"{format_number(worthwhile, signed=False)}{_name_unit(document)}"
+        shown = document.get("worthwhile_display")
+        least = format_number(abs(worthwhile if shown is None else shown), signed=False)
+        least += _name_unit(document)
         yield f"Dots: less than {least} ({document.get('worthwhile_note') or 'as you set it'})."
 
 
 def _name_unit(document: Mapping[str, Any]) -> str:
-    if document.get("transform") == "log":
-        return " (log scale)"
-    return f" {document['unit']}" if document.get("unit") else ""
+    unit = document.get("display_unit", document.get("unit"))
+    return f" {unit}" if unit else ""
 
 
 def _describe_cue(
@@ -94,7 +95,7 @@ def _describe_cue(
         parts.append(f"{INDENT}{cue['first_words']}\n")
     bar = INDENT + draw_bar(cue, scale, worthwhile)
     numbers = (
-        f"{format_number(cue['effect'])} (95 %: {format_interval(cue)}), "
+        f"{format_effect(cue)} (95 %: {format_interval(cue)}), "
         f"chance {format_chance(cue['p_better'])}"
     )
     parts.append(f"{bar}  {numbers}\n" if is_wide else f"{bar}\n{INDENT}{numbers}\n")
