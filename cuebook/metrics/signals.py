@@ -64,7 +64,7 @@ def clean_track(recording: Recording, track: PointTrack, settings: Settings) -> 
     values = track.values
     flags: list[str] = []
     if recording.is_resampling_needed and settings.get("resample", "auto") == "auto":
-        values = _resample(recording, values, rate_hz, max_gap_s)
+        values = _resample(recording, values, rate_hz)
         flags.append("resampled")
     values = _cut_missing_ends(values)
     if values.shape[0] < FEWEST_SAMPLES:
@@ -189,15 +189,13 @@ def _cut_missing_ends(values: FloatArray) -> FloatArray:
     return values[known[0] : known[-1] + 1] if known.size else values[:0]
 
 
-def _resample(
-    recording: Recording, values: FloatArray, rate_hz: float, max_gap_s: float
-) -> FloatArray:
+def _resample(recording: Recording, values: FloatArray, rate_hz: float) -> FloatArray:
     if recording.time_s is None:  # pragma: no cover - only stamped recordings jitter
         return values
     known = ~np.isnan(values).any(axis=1)
     if np.count_nonzero(known) < FEWEST_SAMPLES:
         return values[known]
-    return resample_evenly(recording.time_s[known], values[known], rate_hz, max_gap_s)
+    return resample_evenly(recording.time_s[known], values[known], rate_hz)
 
 
 def _filter(values: FloatArray, rate_hz: float, settings: Settings, flags: list[str]) -> FloatArray:

@@ -4,7 +4,9 @@ from __future__ import annotations
 
 import re
 from dataclasses import dataclass
+from typing import NoReturn
 
+from cuebook.errors import UsageError
 from cuebook.recordings.recording import (
     ACCELERATION,
     ANGLE,
@@ -17,12 +19,18 @@ from cuebook.recordings.recording import (
     UNKNOWN,
 )
 from cuebook.recordings.units import get_factor, is_unit, tidy_unit
+from cuebook.vocabulary import find_nearest
 
 TIME = "time"
 _TIME_NAMES = frozenset(
     {"time", "t", "timestamp", "timestamps", "times", "zeit", "tiempo", "temps", "seconds"}
 )
 EVENT_CHANNELS = ("onset", "tap", "beat", "step")
+_SIGNAL_CHANNELS = (
+    *(TIME, "x", "y", "z", "cop_x", "cop_y", "speed", "angle", "fx", "fy", "fz"),
+    *("acc_x", "acc_y", "acc_z", "gyro_x", "gyro_y", "gyro_z", "hand_x"),
+)
+"""Examples to suggest from: any point may be named, such as elbow_y."""
 _EVENT_NAMES = {
     "onset": "onset",
     "onsets": "onset",
@@ -53,6 +61,8 @@ _WORDS = {
     "torque": MOMENT,
     "angle": ANGLE,
 }
+_DIRECTIONS = {"ml": "x", "ap": "y"}
+"""Sideways and forward, as force plates name them."""
 _PRESSURE_WORDS = ("centre", "center")
 _QUANTITY_OF_UNIT_KIND = (
     ("length", POSITION),
@@ -98,9 +108,19 @@ def split_unit(name: str) -> tuple[str, str | None]:
 def describe_column(name: str, column: int) -> Channel:
     """Return what a column's name says it is."""
     base, unit = split_unit(name)
-    words = [word.lower() for word in re.split(r"[^A-Za-z0-9]+", _CAMEL.sub(" ", base)) if word]
-    joined = "".join(words)
-    if joined in _TIME_NAMES:
+    # CoPx is one word and an axis; handX is two words. What is understood first counts.
+    whole = _describe_words(_split_words(base), name, column, unit)
+    if whole.quantity != UNKNOWN:
+        return whole
+    return _describe_words(_split_words(_CAMEL.sub(" ", base)), name, column, unit)
+
+
+def _split_words(text: str) -> list[str]:
+    return [word.lower() for word in re.split(r"[^A-Za-z0-9]+", text) if word]
+
+
+def _describe_words(words: list[str], name: str, column: int, unit: str | None) -> Channel:
+    if "".join(words) in _TIME_NAMES:
         return Channel(name, column, TIME, unit=unit)
     axis, rest = _find_axis(words)
     stem = "".join(rest)
@@ -127,12 +147,35 @@ def describe_event_column(name: str) -> str | None:
 
 
 def name_channel(channel: str, column: int, name: str) -> Channel:
-    """Return the channel of a column that a user named, such as ``cop_x`` or ``x``."""
+    """Return the channel of a column that a user named, such as ``cop_x`` or ``x``.
+
+    Raises
+    ------
+    UsageError : a channel that says nothing; the nearest known one is named.
+    """
     _, unit = split_unit(name)
     if channel == TIME:
         return Channel(name, column, TIME, unit=unit)
     said = describe_column(channel, column)
+    if said.quantity in {UNKNOWN, TIME}:
+        refuse_channel(channel, _SIGNAL_CHANNELS)
     return Channel(name, column, said.quantity, said.axis, unit, said.point)
+
+
+def refuse_channel(channel: str, known: tuple[str, ...]) -> NoReturn:
+    """Raise the error of a channel name that ``--columns`` does not know."""
+    nearest = find_nearest(channel, known) or known[:6]
+    raise UsageError(
+        f"--columns names a channel '{channel}', which is not known.",
+        f"Nearest known: {', '.join(nearest)}.",
+    )
+
+
+def list_unit_keys(channel: Channel) -> tuple[str, ...]:
+    """Return the words by which ``--units`` may mean a channel, the most exact first."""
+    whole = "_".join(part for part in (channel.point, channel.axis) if part)
+    keys = (channel.name, whole, channel.axis, channel.point, channel.quantity)
+    return tuple(key for key in keys if key)
 
 
 def _find_axis(words: list[str]) -> tuple[str | None, list[str]]:
@@ -142,6 +185,8 @@ def _find_axis(words: list[str]) -> tuple[str | None, list[str]]:
     last = words[-1]
     if last in {"x", "y", "z"}:
         return last, words[:-1]
+    if last in _DIRECTIONS and "cop" in words:
+        return _DIRECTIONS[last], words[:-1]
     if len(last) > 1 and last[-1] in "xyz":
         stem = last[:-1]
         if stem in {"cop", "f", "m", "acc", "gyr", "gyro", "pos", "vel", "accel"}:

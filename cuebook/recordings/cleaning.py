@@ -9,6 +9,7 @@ import numpy as np
 import numpy.typing as npt
 
 from cuebook.recordings.recording import FloatArray
+from cuebook.recordings.time_axis import HOLE
 
 PASSES = 2
 
@@ -101,24 +102,29 @@ def _list_runs(mask: npt.NDArray[np.bool_]) -> list[tuple[int, int]]:
     return list(zip(edges[::2].tolist(), edges[1::2].tolist(), strict=True))
 
 
-def resample_evenly(
-    time_s: FloatArray, values: FloatArray, rate_hz: float, max_gap_s: float
-) -> FloatArray:
-    """Return values on an even grid by cubic spline; NaN inside holes wider than the limit.
+def resample_evenly(time_s: FloatArray, values: FloatArray, rate_hz: float) -> FloatArray:
+    """Return values on an even grid by cubic spline; NaN inside every hole in time.
 
     Parameters
     ----------
     time_s : shape (n_samples,), strictly increasing.
     values : shape (n_samples, n_axes), no NaN.
+    rate_hz : samples per second of the grid.
+
+    Notes
+    -----
+    A step longer than 1.5 grid steps is a hole; whether a hole may be filled is decided by
+    :func:`fill_gaps`, so that a lost sample counts as missing whichever way it was lost.
     """
     from scipy.interpolate import CubicSpline  # noqa: PLC0415
 
     n_even = math.floor((time_s[-1] - time_s[0]) * rate_hz + 1e-6) + 1
     grid = np.minimum(time_s[0] + np.arange(n_even) / rate_hz, time_s[-1])
     even = np.asarray(CubicSpline(time_s, values, axis=0)(grid), dtype=np.float64)
-    steps = np.diff(time_s)
-    for index in np.flatnonzero(steps > max(max_gap_s, 1.5 / rate_hz)):
-        even[(grid > time_s[index]) & (grid < time_s[index + 1])] = np.nan
+    # Half a hundredth of a step: a grid point on a sample is not inside the hole.
+    slack = 0.005 / rate_hz
+    for index in np.flatnonzero(np.diff(time_s) > HOLE / rate_hz):
+        even[(grid > time_s[index] + slack) & (grid < time_s[index + 1] - slack)] = np.nan
     return even
 
 
@@ -141,3 +147,30 @@ def estimate_noise_sd(values: FloatArray) -> float:
     # The median resists the few samples where the movement itself bends.
     per_axis = 1.4826 * np.median(np.abs(second), axis=0) / math.sqrt(6.0)
     return float(np.mean(per_axis))
+
+
+def compute_derivative_noise_sd(
+    noise_sd: float, rate_hz: float, cutoff_hz: float | None, order: int
+) -> float:
+    """Return the SD that white noise leaves in a filtered, differentiated signal.
+
+    Parameters
+    ----------
+    noise_sd : SD of the noise in one axis of the signal.
+    rate_hz : samples per second.
+    cutoff_hz : cut-off of :func:`filter_zero_phase`; None: not filtered.
+    order : how often central differences are taken: 0 the signal, 1 velocity, 3 jerk.
+
+    Notes
+    -----
+    The integral over frequency of the squared gain of filter and differences:
+    sd^2 (2/fs) int_0^(fs/2) (gain(f) (fs sin(2 pi f / fs))^order)^2 df.
+    """
+    steps = 4096
+    frequency = (np.arange(steps) + 0.5) * rate_hz / (2 * steps)
+    gain = (rate_hz * np.sin(2 * math.pi * frequency / rate_hz)) ** order
+    if cutoff_hz is not None:
+        design_hz = compute_design_cutoff(rate_hz, cutoff_hz)
+        ratio = np.tan(math.pi * frequency / rate_hz) / math.tan(math.pi * design_hz / rate_hz)
+        gain = gain / (1.0 + ratio**4)
+    return noise_sd * float(np.sqrt(np.mean(gain**2)))

@@ -6,11 +6,18 @@ from collections.abc import Mapping
 
 import numpy as np
 
-from cuebook.errors import InputError, Place
-from cuebook.recordings.channels import EVENT_CHANNELS, describe_event_column, split_unit
+from cuebook.errors import InputError, Place, UsageError
+from cuebook.recordings.channels import (
+    EVENT_CHANNELS,
+    TIME,
+    describe_event_column,
+    refuse_channel,
+    split_unit,
+)
 from cuebook.recordings.recording import FloatArray, ReadingOptions, Recording
 from cuebook.recordings.tables import TextTable
-from cuebook.recordings.units import require_factor
+from cuebook.recordings.units import require_factor, scale_to_si
+from cuebook.vocabulary import find_nearest
 
 KIND_COLUMN = "trial_type"
 
@@ -21,6 +28,9 @@ def find_event_columns(
     """Return which columns hold events; empty if the file is no list of events."""
     if rule.columns:
         named = {name: wanted for name, wanted in rule.columns.items() if name in EVENT_CHANNELS}
+        for name in rule.columns:
+            if named and name not in named:
+                refuse_channel(name, EVENT_CHANNELS)
         return {name: table.find_column(wanted) for name, wanted in named.items()}
     if table.has_header:
         found = {
@@ -44,18 +54,20 @@ def read_events(
     ------
     InputError : text among numbers, or times that go back.
     """
+    _check_units(columns, rule)
     events: dict[str, FloatArray] = {}
     notes = []
     for kind, column in columns.items():
         times = table.get_numbers(column)
-        unit = rule.units.get(kind) or rule.units.get("time") or split_unit(table.names[column])[1]
+        given = next((rule.units[key] for key in (kind, TIME, "*") if key in rule.units), None)
+        unit = given or split_unit(table.names[column])[1]
         factor = require_factor("time", unit, kind) if unit else 1.0
         if unit is None:
             notes.append(f"time: column '{table.names[column]}' taken in s")
         labels = _read_labels(table, kind)
         for name in dict.fromkeys(labels):
             chosen = np.array([label == name for label in labels])
-            events[name] = _order(times, chosen, table, column) * factor
+            events[name] = scale_to_si(_order(times, chosen, table, column), factor)
     if not any(times.size for times in events.values()):
         raise InputError(f"{file} holds no event.", "Export it again.", Place(file=file))
     return Recording(
@@ -67,6 +79,17 @@ def read_events(
         events=events,
         notes=tuple(dict.fromkeys(notes)),
     )
+
+
+def _check_units(columns: Mapping[str, int], rule: ReadingOptions) -> None:
+    known = (*columns, TIME)
+    for key in rule.units:
+        if key not in {*known, "*"}:
+            nearest = find_nearest(key, known) or known
+            raise UsageError(
+                f"--units names '{key}', which is no column of events.",
+                f"Nearest known: {', '.join(nearest)}.",
+            )
 
 
 def _read_labels(table: TextTable, kind: str) -> list[str]:

@@ -2,22 +2,52 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 import numpy as np
 
-from cuebook.errors import InputError, NeedsAnswerError, Place
-from cuebook.recordings.channels import TIME, Channel, describe_column, name_channel
+from cuebook.errors import CuebookError, InputError, NeedsAnswerError, Place, UsageError
+from cuebook.recordings.channels import (
+    TIME,
+    Channel,
+    describe_column,
+    list_unit_keys,
+    name_channel,
+)
 from cuebook.recordings.event_lists import find_event_columns, read_events
-from cuebook.recordings.recording import UNKNOWN, FloatArray, ReadingOptions, Recording, Signal
+from cuebook.recordings.recording import (
+    POSITION,
+    UNKNOWN,
+    FloatArray,
+    ReadingOptions,
+    Recording,
+    Signal,
+)
 from cuebook.recordings.tables import TextTable, read_table
 from cuebook.recordings.text_files import decode_text, read_bytes
-from cuebook.recordings.time_axis import TimeAxis, build_uniform, read_stamps
-from cuebook.recordings.units import KIND_OF_QUANTITY, require_factor, tidy_unit
+from cuebook.recordings.time_axis import (
+    SAME_RATE,
+    TimeAxis,
+    build_uniform,
+    is_counter,
+    read_counter,
+    read_stamps,
+)
+from cuebook.recordings.units import (
+    KIND_OF_QUANTITY,
+    get_factor,
+    require_factor,
+    scale_to_si,
+    tidy_unit,
+)
+from cuebook.vocabulary import find_nearest
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
+
+FOR_ALL = "*"
 
 
 def read_recording(
@@ -62,9 +92,10 @@ def read_content(
 
 def _read_signals(table: TextTable, rule: ReadingOptions, file: str) -> Recording:
     channels = _find_channels(table, rule, file)
+    _check_units(channels, rule)
     axis = _build_time(table, channels, rule, file)
     signals = []
-    notes = list(axis.notes)
+    notes = [*axis.notes, *_note_assumed(channels, rule)]
     for channel in channels:
         if channel.quantity == TIME:
             continue
@@ -125,7 +156,7 @@ def _build_time(
     table: TextTable, channels: Sequence[Channel], rule: ReadingOptions, file: str
 ) -> TimeAxis:
     stamped = next((channel for channel in channels if channel.quantity == TIME), None)
-    if rule.rate_hz is not None and (stamped is None or "time" not in rule.columns):
+    if stamped is None and rule.rate_hz is not None:
         return build_uniform(table.n_rows, rule.rate_hz)
     if stamped is None:
         raise NeedsAnswerError(
@@ -133,15 +164,77 @@ def _build_time(
             "Give the rate with --rate HZ, or name the column with --columns time=NAME.",
             Place(file=file),
         )
+    if rule.rate_hz is not None:
+        return _combine_rate(table, stamped, rule.rate_hz, rule, file)
     stamps = table.get_numbers(stamped.column)
-    unit = rule.units.get(TIME) or stamped.unit
-    return read_stamps(stamps, table.rows, unit, stamped.name, file)
+    return read_stamps(stamps, table.rows, _find_time_unit(stamped, rule), stamped.name, file)
+
+
+def _find_time_unit(stamped: Channel, rule: ReadingOptions) -> str | None:
+    return rule.units.get(TIME) or stamped.unit
+
+
+def _combine_rate(
+    table: TextTable, stamped: Channel, rate_hz: float, rule: ReadingOptions, file: str
+) -> TimeAxis:
+    """Return the time where a rate was given beside a column of time: the rate counts."""
+    uniform = build_uniform(table.n_rows, rate_hz)
+    if not table.is_numeric(stamped.column):
+        return uniform
+    stamps = table.get_numbers(stamped.column)
+    if is_counter(stamps):
+        return read_counter(stamps, table.rows, rate_hz, stamped.name, file)
+    try:
+        unit = _find_time_unit(stamped, rule)
+        said = read_stamps(stamps, table.rows, unit, stamped.name, file).rate_hz
+    except CuebookError:
+        return uniform  # what cannot be read cannot contradict
+    if abs(said - rate_hz) <= SAME_RATE * rate_hz:
+        return uniform
+    note = f"time: column '{stamped.name}' says {said:.4g} Hz; the rate you gave was taken"
+    return replace(uniform, notes=(*uniform.notes, note))
+
+
+def _check_units(channels: Sequence[Channel], rule: ReadingOptions) -> None:
+    """Refuse a unit that is meant for no channel, or fits none.
+
+    Raises
+    ------
+    UsageError : names the nearest channel.
+    """
+    known = {key for channel in channels for key in list_unit_keys(channel)} | {TIME, FOR_ALL}
+    for key in rule.units:
+        if key not in known:
+            nearest = find_nearest(key, known - {FOR_ALL}) or tuple(sorted(known - {FOR_ALL}))[:6]
+            raise UsageError(
+                f"--units names '{key}', which is no channel of the recording.",
+                f"Nearest known: {', '.join(nearest)}.",
+            )
+    unit = rule.units.get(FOR_ALL)
+    if unit is not None and not any(_fits(channel, unit) for channel in channels):
+        raise UsageError(
+            f"The unit '{unit}' fits no channel of the recording.",
+            "Say what it belongs to, such as --units x=cm or --units time=ms.",
+        )
+
+
+def _fits(channel: Channel, unit: str) -> bool:
+    kind = KIND_OF_QUANTITY.get(channel.quantity)
+    return kind is not None and get_factor(kind, unit) is not None
+
+
+def _find_given_unit(channel: Channel, rule: ReadingOptions) -> str | None:
+    for key in list_unit_keys(channel):
+        if key in rule.units:
+            return rule.units[key]
+    unit = rule.units.get(FOR_ALL)
+    return unit if unit is not None and _fits(channel, unit) else None
 
 
 def _make_signal(
     channel: Channel, values: FloatArray, rule: ReadingOptions
 ) -> tuple[Signal, str | None]:
-    given = rule.units.get(_name_for_units(channel)) or rule.units.get("*")
+    given = _find_given_unit(channel, rule)
     unit = given or channel.unit
     kind = KIND_OF_QUANTITY.get(channel.quantity)
     if unit is None or kind is None:
@@ -154,14 +247,20 @@ def _make_signal(
     factor = require_factor(kind, unit, f"'{channel.name}'")
     source = "as you said" if given else "from the column's name"
     note = f"units: {tidy_unit(unit)} {source}" if factor != 1.0 else None
-    # Dividing by a whole number is exact where multiplying by its inverse is not.
-    scaled = values * factor if factor >= 1.0 else values / round(1.0 / factor, 9)
+    scaled = scale_to_si(values, factor)
     return Signal(channel.name, channel.quantity, unit, channel.axis, scaled, channel.point), note
 
 
-def _name_for_units(channel: Channel) -> str:
-    parts = [part for part in (channel.point, channel.axis) if part]
-    return "_".join(parts) or channel.quantity
+def _note_assumed(channels: Sequence[Channel], rule: ReadingOptions) -> list[str]:
+    """Return what is said about columns that are named by an axis and nothing else."""
+    bare = [
+        f"'{channel.name}'"
+        for channel in channels
+        if channel.quantity == POSITION and not channel.point and channel.unit is None
+    ]
+    if rule.columns or not bare:
+        return []
+    return [f"assumed: {', '.join(bare)} taken for the position of one point"]
 
 
 def _refuse_empty(signals: Sequence[Signal], file: str) -> None:

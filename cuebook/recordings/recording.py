@@ -17,6 +17,13 @@ MOMENT, PRESSURE_CENTRE, UNKNOWN = "moment", "centre_of_pressure", "unknown"
 AXES = ("x", "y", "z")
 
 
+def _freeze(values: FloatArray) -> FloatArray:
+    """Return a view that nobody can write to."""
+    view = values.view()
+    view.flags.writeable = False
+    return view
+
+
 @dataclass(frozen=True, eq=False)
 class Signal:
     """One channel of a recording."""
@@ -33,6 +40,9 @@ class Signal:
     """Shape (n_samples,), SI units where the unit is known; NaN where missing."""
     point: str = ""
     """Which point it belongs to: hand, cop …; empty if the name does not say."""
+
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "values", _freeze(self.values))
 
 
 @dataclass(frozen=True, slots=True)
@@ -56,6 +66,8 @@ class PointTrack:
     """Shape (n_samples, n_axes), metres, or the file's unit where that is unknown."""
     is_unit_known: bool
     names: tuple[str, ...]
+    units: tuple[str | None, ...] = ()
+    """Unit of each axis in the file; None where unknown."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -78,6 +90,12 @@ class Recording:
     """Times in seconds per kind: tap, beat, step, onset."""
     notes: tuple[str, ...] = ()
     """What was understood or assumed, in plain words; no header text."""
+
+    def __post_init__(self) -> None:
+        if self.time_s is not None:
+            object.__setattr__(self, "time_s", _freeze(self.time_s))
+        frozen = {kind: _freeze(times) for kind, times in self.events.items()}
+        object.__setattr__(self, "events", frozen)
 
     @property
     def n_samples(self) -> int:
@@ -122,6 +140,7 @@ class Recording:
             np.column_stack([signal.values for signal in axes]),
             all(signal.unit is not None for signal in axes),
             tuple(signal.name for signal in axes),
+            tuple(signal.unit for signal in axes),
         )
 
     def get_series(self, *quantities: str) -> Signal | None:
@@ -137,9 +156,9 @@ class ReadingOptions:
     """Channel (time, x, y, z, cop_x, speed, tap, beat …) to header name or number from 1."""
     rate_hz: float | None = None
     units: Mapping[str, str] = field(default_factory=dict)
-    """Unit per channel; key ``*`` holds for all but time."""
+    """Unit per channel: a column's name, hand_x, x, a quantity, time; ``*`` for all it fits."""
     points: Mapping[str, tuple[float, ...]] = field(default_factory=dict)
-    """Places in the task, such as via, in the unit of the position."""
+    """Places in the task, such as via, in the unit of the position in the file."""
     beats: str | None = None
     """A file of beats, or beats a minute."""
 

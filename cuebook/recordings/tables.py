@@ -168,7 +168,9 @@ def _parse(table: TextTable) -> list[FloatArray | None]:
     for column in range(width):
         series = frame[column]
         if pd.api.types.is_numeric_dtype(series.dtype) and series.dtype != bool:
-            columns.append(series.to_numpy(dtype=np.float64, copy=True))
+            numbers = series.to_numpy(dtype=np.float64, copy=True)
+            numbers[np.isinf(numbers)] = np.nan
+            columns.append(numbers)
         else:
             columns.append(None)
     return columns

@@ -13,6 +13,10 @@ from cuebook.recordings.units import require_factor
 SLOWEST_HZ, FASTEST_HZ = 5.0, 2000.0
 HOLE = 1.5
 """Steps longer than this many median steps are holes, not sampling."""
+NO_JITTER = 1e-4
+"""Stamps within this share of a step of the even grid cannot matter."""
+SAME_RATE = 0.01
+"""Two rates this share apart are still the same rate."""
 _UNITS = (("s", 1.0), ("ms", 1e-3), ("us", 1e-6), ("ns", 1e-9))
 
 
@@ -38,6 +42,37 @@ def build_uniform(n_samples: int, rate_hz: float) -> TimeAxis:
     return TimeAxis(time_s, np.arange(n_samples), rate_hz, "user", (), False, notes)
 
 
+def is_counter(stamps: FloatArray) -> bool:
+    """Return whether a column only counts samples: whole numbers, nearly all one apart."""
+    steps = np.diff(stamps)
+    return bool(
+        steps.size
+        and np.isfinite(steps).all()
+        and (steps >= 0).all()
+        and np.median(steps) == 1.0
+        and (steps == np.round(steps)).all()
+    )
+
+
+def read_counter(
+    counts: FloatArray, rows: list[int], rate_hz: float, column: str, file: str
+) -> TimeAxis:
+    """Return the time of samples that were counted, at a rate the user gave.
+
+    Counts that are left out are holes: they are seen, which a bare rate could not do.
+
+    Raises
+    ------
+    InputError : a count that goes back.
+    """
+    kept = _keep_forward(counts, rows, column, file)
+    time_s = (counts[kept] - counts[kept[0]]) / rate_hz
+    gaps = _find_gaps(time_s, np.diff(time_s) * rate_hz > HOLE)
+    notes = [f"time: column '{column}' counts samples, at the rate you gave, {rate_hz:g} Hz"]
+    notes += _describe_losses(counts.size - kept.size, gaps)
+    return TimeAxis(time_s, kept, rate_hz, "user", gaps, bool(gaps), tuple(notes))
+
+
 def read_stamps(
     stamps: FloatArray, rows: list[int], unit: str | None, column: str, file: str
 ) -> TimeAxis:
@@ -54,9 +89,31 @@ def read_stamps(
     InputError : missing stamps, time going back, fewer than 2 different stamps.
     NeedsAnswerError : a bare counter, or a step that fits no unit.
     """
-    place = Place(file=file, column=column)
-    if np.isnan(stamps).any():
-        row = rows[int(np.flatnonzero(np.isnan(stamps))[0])]
+    kept = _keep_forward(stamps, rows, column, file)
+    n_repeated = stamps.size - kept.size
+    stamps = stamps[kept]
+    steps = np.diff(stamps)
+    found, factor = _find_unit(steps, unit, column, file)
+    time_s = (stamps - stamps[0]) * factor
+    steps_s = steps * factor
+    is_hole = steps_s > HOLE * float(np.median(steps_s))
+    gaps = _find_gaps(time_s, is_hole)
+    rate_hz = 1.0 / float(np.mean(steps_s[~is_hole]))
+    how = f"in {found}" if unit else f"taken in {found}: {rate_hz:.4g} Hz"
+    notes = [f"time: column '{column}' {how}", *_describe_losses(n_repeated, gaps)]
+    grain_s = 4.0 * float(np.spacing(np.max(np.abs(stamps)))) * factor
+    needs = bool(gaps) or _leaves_grid(time_s, steps_s, rate_hz, grain_s)
+    if needs:
+        why = "jitter" if not gaps else "have gaps"
+        notes.append(f"time: the stamps {why}, so samples are put on an even grid")
+    return TimeAxis(time_s, kept, rate_hz, "file", gaps, needs, tuple(notes))
+
+
+def _keep_forward(stamps: FloatArray, rows: list[int], column: str, file: str) -> np.ndarray:
+    """Return the indices of the stamps that move on; repeated ones are dropped."""
+    known = np.isfinite(stamps)
+    if not known.all():
+        row = rows[int(np.flatnonzero(~known)[0])]
         raise InputError(
             f"Line {row} of {file} has no time in column '{column}'.",
             "Fill or remove the line.",
@@ -71,35 +128,34 @@ def read_stamps(
             Place(file, row, column),
         )
     kept = np.flatnonzero(np.append(True, steps > 0))
-    notes = []
-    if kept.size < stamps.size:
-        notes.append(f"time: {stamps.size - kept.size} repeated stamps dropped")
     if kept.size < 2:
-        raise InputError(f"{file} holds a single moment in time.", "Record longer.", place)
-    stamps = stamps[kept]
-    steps = np.diff(stamps)
-    factor, note = _find_unit(steps, unit, column, place)
-    notes.append(note)
-    time_s = (stamps - stamps[0]) * factor
-    steps_s = steps * factor
-    median = float(np.median(steps_s))
-    is_hole = steps_s > HOLE * median
-    gaps = tuple(
+        raise InputError(
+            f"{file} holds a single moment in time.", "Record longer.", Place(file, None, column)
+        )
+    return kept
+
+
+def _find_gaps(time_s: FloatArray, is_hole: np.ndarray) -> tuple[Gap, ...]:
+    return tuple(
         Gap(float(time_s[index]), float(time_s[index + 1])) for index in np.flatnonzero(is_hole)
     )
-    rate_hz = 1.0 / float(np.mean(steps_s[~is_hole]))
+
+
+def _describe_losses(n_repeated: int, gaps: tuple[Gap, ...]) -> list[str]:
+    notes = []
+    if n_repeated:
+        notes.append(f"time: {n_repeated} repeated stamps dropped")
     if gaps:
         longest = max(gap.duration_s for gap in gaps)
         notes.append(f"time: {len(gaps)} gaps, the longest {longest:.3g} s")
-    needs = _needs_resampling(stamps * factor, steps_s, rate_hz, bool(gaps))
-    if needs:
-        notes.append("time: the stamps jitter, so samples are put on an even grid")
-    return TimeAxis(time_s, kept, rate_hz, "file", gaps, needs, tuple(notes))
+    return notes
 
 
-def _find_unit(steps: FloatArray, unit: str | None, column: str, place: Place) -> tuple[float, str]:
+def _find_unit(steps: FloatArray, unit: str | None, column: str, file: str) -> tuple[str, float]:
+    """Return the unit of time and what turns it into seconds."""
     if unit is not None:
-        return require_factor("time", unit, "time"), f"time: column '{column}' in {unit}"
+        return unit, require_factor("time", unit, "time")
+    place = Place(file=file, column=column)
     median = float(np.median(steps))
     if np.all(steps == 1.0):
         raise NeedsAnswerError(
@@ -118,25 +174,19 @@ def _find_unit(steps: FloatArray, unit: str | None, column: str, place: Place) -
             "Give its unit with --units time=ms, or the rate with --rate HZ.",
             place,
         )
-    name, factor = fitting[0]
-    rate = 1.0 / (median * factor)
-    return (
-        factor,
-        f"time: column '{column}' taken in {name}, as steps of {median:g} mean {rate:.4g} Hz",
-    )
+    return fitting[0]
 
 
-def _needs_resampling(
-    stamps_s: FloatArray,
-    steps_s: FloatArray,
-    rate_hz: float,
-    has_gaps: bool,  # noqa: FBT001
-) -> bool:
-    """Return whether stamps leave the even grid by more than their own rounding."""
-    if has_gaps:
-        return True
-    grid = stamps_s[0] + np.arange(stamps_s.size) / rate_hz
+def _leaves_grid(time_s: FloatArray, steps_s: FloatArray, rate_hz: float, grain_s: float) -> bool:
+    """Return whether stamps leave the even grid by more than their own rounding.
+
+    Parameters
+    ----------
+    grain_s : how finely a stamp of this size can be stored at all; large for an epoch.
+    """
+    off_grid_s = float(np.max(np.abs(time_s - np.arange(time_s.size) / rate_hz)))
     # The last printed digit of a stamp: the smallest difference between steps that occurs.
-    ordered = np.unique(np.round(steps_s, 12))
-    tick = float(np.min(np.diff(ordered))) if ordered.size > 1 else 0.0
-    return float(np.max(np.abs(stamps_s - grid))) > max(tick, 1e-9 * stamps_s.size / rate_hz)
+    apart = np.diff(np.unique(np.round(steps_s / grain_s)))
+    apart = apart[apart > 1]
+    tick_s = float(np.min(apart)) * grain_s if apart.size else 0.0
+    return off_grid_s > max(1.001 * tick_s + grain_s, NO_JITTER / rate_hz)

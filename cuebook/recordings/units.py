@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 
 from cuebook.errors import UsageError
+from cuebook.recordings.recording import FloatArray
 
 _LENGTH = {"m": 1.0, "dm": 0.1, "cm": 0.01, "mm": 0.001, "um": 1e-6, "in": 0.0254, "ft": 0.3048}
 _TIME = {"s": 1.0, "sec": 1.0, "ms": 1e-3, "us": 1e-6, "ns": 1e-9, "min": 60.0}
@@ -89,6 +90,14 @@ def require_factor(kind: str, unit: str, channel: str) -> float:
             f"Known: {known}.",
         )
     return factor
+
+
+def scale_to_si(values: FloatArray, factor: float) -> FloatArray:
+    """Return values in SI, without the rounding that can be avoided.
+
+    Dividing by a whole number is exact where multiplying by its inverse is not.
+    """
+    return values * factor if factor >= 1.0 else values / round(1.0 / factor, 9)
 
 
 def is_unit(text: str) -> bool:

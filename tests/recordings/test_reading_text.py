@@ -8,6 +8,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from cuebook.errors import CuebookError, InputError, NeedsAnswerError, UsageError
+from cuebook.recordings.channels import describe_column
 from cuebook.recordings.reading import read_content, read_recording
 from cuebook.recordings.recording import ReadingOptions
 
@@ -136,6 +137,101 @@ def test_an_unknown_column_names_the_nearest() -> None:
     assert "hand_x_m" in caught.value.hint
 
 
+@pytest.mark.parametrize(
+    ("options", "words", "nearest"),
+    [
+        (ReadingOptions(columns={"tiem": "time_s", "x": "hand_x_m"}), "'tiem'", "time"),
+        (ReadingOptions(columns={"tap": "1", "baet": "2"}), "'baet'", "beat"),
+        (ReadingOptions(units={"hand_xx": "cm"}), "'hand_xx'", "hand_x"),
+        (ReadingOptions(units={"*": "N"}), "fits no channel", "--units"),
+    ],
+)
+def test_a_word_that_no_option_knows_is_never_passed_over(
+    options: ReadingOptions, words: str, nearest: str
+) -> None:
+    """A slip in a channel's name is answered with the nearest, not ignored."""
+    with pytest.raises(UsageError, match=words) as caught:
+        read_content(make_text(), "reach.csv", options)
+    assert nearest in caught.value.hint
+
+
+@pytest.mark.parametrize("key", ["x", "hand", "hand_x", "hand_x_m", "position"])
+def test_a_channel_is_meant_by_any_of_its_names(key: str) -> None:
+    """A unit may be given by axis, point, both, column or quantity."""
+    recording = read_content(make_text(), "reach.csv", ReadingOptions(units={key: "cm"}))
+    assert recording.signals[0].unit == "cm"
+
+
+def test_one_unit_for_all_holds_for_all_it_fits() -> None:
+    """Centimetres are of no concern to a force."""
+    rows = "\n".join(f"{at / 100},700,{at * 0.01},{at * 0.02}" for at in range(20))
+    content = f"time_s,Fz[N],CoPx,CoPy\n{rows}\n".encode()
+    recording = read_content(content, "plate.csv", ReadingOptions(units={"*": "cm"}))
+    assert [signal.unit for signal in recording.signals] == ["N", "cm", "cm"]
+
+
+@pytest.mark.parametrize("unit", ["*", "time", "onset"])
+def test_a_unit_given_for_events_is_the_unit_of_time(unit: str) -> None:
+    """Events in milliseconds are read in milliseconds, however that is said."""
+    options = ReadingOptions(units={unit: "ms"})
+    recording = read_content(b"onset\n500\n1000\n1600\n", "taps.csv", options)
+    assert recording.events["onset"].tolist() == [0.5, 1.0, 1.6]
+
+
+@pytest.mark.parametrize(
+    ("name", "quantity", "axis"),
+    [
+        ("CoPx", "centre_of_pressure", "x"),
+        ("COPy[cm]", "centre_of_pressure", "y"),
+        ("cop_ap", "centre_of_pressure", "y"),
+        ("Center of Pressure X (mm)", "centre_of_pressure", "x"),
+        ("handX", "position", "x"),
+        ("left_hand_y_mm", "position", "y"),
+        ("Gyroscope X (deg/s)", "angular_speed", "x"),
+        ("accY", "acceleration", "y"),
+        ("Fz", "force", "z"),
+        ("Time[s]", "time", None),
+        ("pen_pressure", "unknown", None),
+    ],
+)
+def test_a_column_is_known_by_how_devices_name_it(
+    name: str, quantity: str, axis: str | None
+) -> None:
+    """Names with and without units, capitals and underscores say what they are."""
+    channel = describe_column(name, 0)
+    assert (channel.quantity, channel.axis) == (quantity, axis)
+
+
+def test_bare_axes_are_taken_for_a_position_and_that_is_said() -> None:
+    """Columns x and y may be anything; what they were taken for stands in the notes."""
+    recording = read_content(make_text(header="t,x,y"), "reach.csv")
+    assert any(note.startswith("assumed: 'x', 'y'") for note in recording.notes)
+
+
+def test_a_recording_cannot_be_changed() -> None:
+    """Neither the recording nor the numbers in it can be written to."""
+    recording = read_content(make_text(), "reach.csv")
+    with pytest.raises(ValueError, match="read-only"):
+        recording.signals[0].values[0] = 1.0
+    with pytest.raises(AttributeError):
+        recording.rate_hz = 1.0  # type: ignore[misc]
+
+
+def test_infinite_samples_are_missing() -> None:
+    """A sensor's inf is no number."""
+    rows = "\n".join(f"{at / 100},{'inf' if at == 5 else at}" for at in range(20))
+    recording = read_content(f"time_s,x_m\n{rows}\n".encode(), "r.csv")
+    assert np.isnan(recording.signals[0].values[5])
+
+
+@given(st.lists(st.floats(-1e6, 1e6), min_size=5, max_size=40).filter(any))
+def test_numbers_come_back_to_the_last_bit(values: list[float]) -> None:
+    """What was printed in full is read in full."""
+    rows = "\n".join(f"{at / 100!r},{value!r}" for at, value in enumerate(values))
+    recording = read_content(f"time_s,x_m\n{rows}\n".encode(), "r.csv")
+    assert recording.signals[0].values.tolist() == values
+
+
 def test_columns_can_be_given_by_number_for_a_file_without_names() -> None:
     """Numbers count from 1."""
     content = make_text().split(b"\n", 1)[1]
@@ -182,6 +278,39 @@ def test_rounded_stamps_are_kept_and_jitter_is_resampled() -> None:
     stamps = np.sort(np.arange(200) / 150 + rng.uniform(-0.002, 0.002, 200))
     jittered = "\n".join(f"{stamp:.6f},{at}" for at, stamp in enumerate(stamps))
     assert read_content(f"time_s,x_m\n{jittered}\n".encode(), "r.csv").is_resampling_needed
+
+
+@pytest.mark.parametrize(
+    ("start", "scale", "digits"),
+    [(1568054294283405, 1e6, 0), (1568054294.283, 1.0, 3), (354642400.0, 1e3, 0)],
+)
+def test_even_stamps_of_a_late_clock_are_kept(start: float, scale: float, digits: int) -> None:
+    """An epoch in seconds, microseconds or a tablet's milliseconds is no jitter by its size."""
+    stamps = [start + round(at / 60 * scale, digits) for at in range(300)]
+    rows = "\n".join(f"{stamp:.{digits}f},{at}" for at, stamp in enumerate(stamps))
+    recording = read_content(f"timestamp,x_m\n{rows}\n".encode(), "r.csv")
+    assert recording.rate_hz == pytest.approx(60.0, rel=2e-4)
+    assert not recording.is_resampling_needed
+
+
+def test_a_counter_with_a_rate_keeps_its_lost_samples() -> None:
+    """Counts that are left out are gaps, not time that never was."""
+    counts = [*range(1, 31), *range(36, 61)]
+    rows = "\n".join(f"{count},{0.1 * count}" for count in counts)
+    options = ReadingOptions(columns={"time": "frame", "x": "x_m"}, rate_hz=50.0)
+    recording = read_content(f"frame,x_m\n{rows}\n".encode(), "r.csv", options)
+    assert recording.duration_s == pytest.approx(59 / 50)
+    assert [gap.duration_s for gap in recording.gaps] == [pytest.approx(6 / 50)]
+    assert recording.rate_source == "user"
+
+
+def test_a_rate_that_contradicts_the_stamps_is_said() -> None:
+    """The rate a user gives is taken; what the column says stands beside it."""
+    recording = read_content(make_text(), "r.csv", ReadingOptions(rate_hz=50.0))
+    assert recording.rate_hz == 50.0
+    assert any("says 100 Hz" in note for note in recording.notes)
+    agreed = read_content(make_text(), "r.csv", ReadingOptions(rate_hz=100.5))
+    assert not any("says" in note for note in agreed.notes)
 
 
 def test_holes_in_time_are_gaps_and_do_not_slow_the_rate() -> None:
