@@ -57,6 +57,11 @@ def add(
         print_json({"format": "cuebook.learner/1", "learner": made})
         return
     click.echo(f"{made} added.")
+    if ranking == "yes" and given_by == "parent_guardian":
+        click.echo(
+            "The child's own agreement: not asked, which counts as no. When asked: cuebook "
+            f"learner consent {made} use_for_ranking yes --given-by parent_guardian --assent yes"
+        )
     if not ranking:
         click.echo(
             "Consent for ranking: not asked, which counts as no. "

@@ -24,3 +24,13 @@ def test_the_library_is_named_before_or_after_the_command_or_by_the_variable(
     command = ["learner", "list"]
     assert run([*option, *command] if place == "before" else [*command, *option]) == 0
     assert "heron-lamp" in capsys.readouterr().out
+
+
+def test_a_guardians_yes_alone_is_said_to_count_as_no(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """A child's own agreement is asked for beside the guardian's."""
+    added = ["learner", "add", "ada-one", "--age", "12", "--ranking", "yes"]
+    given = ["--given-by", "parent_guardian", "--library", str(tmp_path / "library")]
+    assert run([*added, *given]) == 0
+    assert "counts as no" in capsys.readouterr().out
